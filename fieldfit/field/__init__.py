@@ -1,0 +1,1 @@
+"""What the crew brings: section file, logs, units, plateaus."""

@@ -1,0 +1,1 @@
+"""The physics a pipe obeys, on arrays in SI units."""

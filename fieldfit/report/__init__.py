@@ -1,0 +1,1 @@
+"""What people read: record, figures, page, summary."""

@@ -1,0 +1,73 @@
+"""Everything one assessment found: what every report is printed from."""
+
+from __future__ import annotations
+
+import datetime as dt
+from dataclasses import dataclass
+
+from fieldfit.decisions.new_pipe import NewPipeComparison
+from fieldfit.field.log import Log
+from fieldfit.field.readings import Plateaus, ReachReadings, Screening
+from fieldfit.field.section import Section
+from fieldfit.inference.wall import Wall
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Caution:
+    """Something the reader must know beside the answer."""
+
+    about: str
+    """One word: static, bore, elevation, clock, fit, …"""
+    text: str
+    """The sentence."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ReachFinding:
+    """What was found between two taps."""
+
+    readings: ReachReadings
+    """What the fit used."""
+    wall: Wall
+    """What the fit says."""
+    new_pipe: NewPipeComparison | None
+    """Against new pipe; None when the material is unknown or there is no estimate."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CampaignFinding:
+    """What one log says."""
+
+    date: dt.date | None
+    """Day of the test."""
+    log: Log
+    """The log."""
+    screening: Screening
+    """What became of its rows."""
+    plateaus: Plateaus
+    """Its steady windows."""
+    reaches: tuple[ReachFinding, ...]
+    """One per pair of neighbouring taps."""
+    cautions: tuple[Caution, ...]
+    """What to know beside the answer."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Finding:
+    """The whole answer on one section."""
+
+    section: Section
+    """What was known beforehand."""
+    campaigns: tuple[CampaignFinding, ...]
+    """One per log."""
+
+    @property
+    def answered(self) -> bool:
+        """Whether every reach of every campaign reached an estimate."""
+        return all(reach.wall.state != "no estimate" for campaign in self.campaigns for reach in campaign.reaches)
+
+    def _repr_html_(self) -> str:
+        """Show the page in a notebook."""
+        from fieldfit.report.page import page
+
+        return page(self)
