@@ -26,7 +26,6 @@ from typing import Literal
 import numpy as np
 from chemicals import iapws95_rho, mu_IAPWS
 from fluids.friction import Colebrook
-from scipy.optimize import minimize_scalar
 from scipy.signal import lfilter
 
 GRAVITY = 9.80665
@@ -97,7 +96,8 @@ class Plan:
     statics: Literal["both", "before", "none"] = "both"
     source_loss_pa: float = 0.0
     """How far the upstream pressure falls at the largest flow."""
-    dwell_s: float = 60.0
+    dwell_s: float | tuple[float, ...] = 60.0
+    """Of every setting, or of each one in turn, statics included."""
     ramp_s: float = 8.0
     interval_s: float = 2.0
     drift: float = 0.004
@@ -126,7 +126,8 @@ class Truth:
 
     roughness_m: float
     equivalent_roughness_m: float
-    """Roughness that readings without instrument error would give through Colebrook–White; 0 is smooth."""
+    """Roughness that readings without instrument error would give through Colebrook–White, at the flow where they
+    tell most; 0 is smooth."""
     bore_m: float
     length_m: float
     fitting_k: float
@@ -219,7 +220,7 @@ def draw_errors(rng, pipe, kit, plan, correlation=0.05):
 def friction_factor(reynolds, relative_roughness, errors=None, centre=1.0):
     """Darcy friction factor of each Reynolds number, with the correlation's own error where one is given."""
     smallest = np.maximum(np.asarray(reynolds, dtype=float), 1.0)
-    turbulent = np.array([Colebrook(max(re, 4000.0), relative_roughness) for re in smallest.ravel()])
+    turbulent = np.array([Colebrook(re, float(relative_roughness)) for re in smallest.clip(4000.0).ravel().tolist()])
     turbulent = turbulent.reshape(smallest.shape)
     if errors is not None:
         turbulent = turbulent * (1.0 + errors.level + errors.slope * np.log10(smallest.clip(4000.0) / centre) / 1.5)
@@ -236,29 +237,22 @@ def true_head_loss(truth, flow_m3_s):
     return (f * truth.length_m / truth.bore_m + truth.fitting_k) * velocity * np.abs(velocity) / (2.0 * GRAVITY)
 
 
-def equivalent_roughness(friction, reynolds, covariance):
-    """ε/D whose Colebrook–White curve comes nearest to the friction factors, weighed by what the test can tell."""
-    weight = np.linalg.inv(covariance)
-
-    def misfit(log_relative):
-        away = np.log(friction / friction_factor(reynolds, np.exp(log_relative)))
-        return away @ weight @ away
-
-    found = minimize_scalar(misfit, bounds=np.log([1e-9, 0.2]), method="bounded", options={"xatol": 1e-7})
-    return float(np.exp(found.x)) if np.exp(found.x) > 2e-8 else 0.0
+def colebrook_roughness(friction, reynolds):
+    """ε/D that gives a friction factor by Colebrook–White solved for it; zero at smooth and below."""
+    root = np.sqrt(friction)
+    return max(3.7 * (10.0 ** (-0.5 / root) - 2.51 / (reynolds * root)), 0.0)
 
 
-def covariance_of_test(kit, plan, flows, head_loss_m, density):
-    """Covariance of ln f between flows that the instruments allow: it says which flows carry the information."""
-    gauge, meter, third = kit.gauge, kit.meter, np.sqrt(3.0)
+def weight_of_flows(kit, plan, flows, head_loss_m, density):
+    """Weight of each flow by what the instruments can tell of f there."""
+    gauge, meter = kit.gauge, kit.meter
     metres = np.sqrt(2.0) / (density * GRAVITY)
-    zero_m = gauge.limit * gauge.full_scale_pa / third * metres
-    if plan.statics != "none":
-        zero_m = np.hypot(0.2 * gauge.noise_pa, gauge.step_pa / 4.0) * metres
-    random = np.hypot(0.2 * gauge.noise_pa, gauge.step_pa / 4.0) * metres / head_loss_m
-    meter_zero = 0.0 if meter.span_m3_s is None else meter.limit * meter.span_m3_s / third
-    shared = [zero_m / head_loss_m, 2.0 * meter_zero / flows, np.full(flows.size, 0.015)]
-    return np.diag(random**2 + (0.4 * meter.noise) ** 2) + sum(np.outer(part, part) for part in shared)
+    head = np.hypot(0.2 * gauge.noise_pa, gauge.step_pa / 4.0) * metres
+    if plan.statics == "none":
+        head = np.hypot(head, gauge.limit * gauge.full_scale_pa / np.sqrt(3.0) * metres)
+    flow = 0.0 if meter.span_m3_s is None else meter.limit * meter.span_m3_s / np.sqrt(3.0)
+    weight = 1.0 / ((head / head_loss_m) ** 2 + (2.0 * flow / flows) ** 2 + meter.noise**2)
+    return weight / weight.sum()
 
 
 def find_truth(pipe, kit, plan, errors):
@@ -269,12 +263,14 @@ def find_truth(pipe, kit, plan, errors):
     flows = np.array(plan.flows_m3_s)
     velocity = flows / (np.pi / 4.0 * bore**2)
     reynolds = velocity * bore / viscosity
-    f = friction_factor(reynolds, pipe.roughness_m / bore, errors, np.exp(np.mean(np.log(reynolds))))
+    relative, middle = pipe.roughness_m / bore, np.exp(np.mean(np.log(reynolds)))
+    f = friction_factor(reynolds, relative, errors, middle)
     head_loss = (f * length / bore + k) * velocity**2 / (2.0 * GRAVITY)
-    relative = equivalent_roughness(f, reynolds, covariance_of_test(kit, plan, flows, head_loss, density))
+    centre = np.exp(weight_of_flows(kit, plan, flows, head_loss, density) @ np.log(reynolds))
+    at_centre = friction_factor(centre, relative, errors, middle)
     return Truth(
         roughness_m=pipe.roughness_m,
-        equivalent_roughness_m=relative * bore,
+        equivalent_roughness_m=colebrook_roughness(float(at_centre), centre) * bore,
         bore_m=bore,
         length_m=length,
         fitting_k=k,
@@ -294,12 +290,14 @@ def settings_over_time(plan):
     """Time, set flow and window number of each row: plateaus joined by smooth valve moves."""
     flows = list(plan.flows_m3_s)
     flows = ([0.0] if plan.statics != "none" else []) + flows + ([0.0] if plan.statics == "both" else [])
-    per_dwell, per_ramp = (max(1, round(s / plan.interval_s)) for s in (plan.dwell_s, plan.ramp_s))
+    dwells = np.broadcast_to(plan.dwell_s, len(flows))
+    per_dwell = [max(1, round(dwell / plan.interval_s)) for dwell in dwells]
+    per_ramp = max(1, round(plan.ramp_s / plan.interval_s))
     move = 0.5 - 0.5 * np.cos(np.pi * (np.arange(per_ramp) + 0.5) / per_ramp)
-    level, window = [np.full(per_dwell, flows[0])], [np.full(per_dwell, 0)]
+    level, window = [np.full(per_dwell[0], flows[0])], [np.full(per_dwell[0], 0)]
     for number, (old, new) in enumerate(pairwise(flows), start=1):
-        level += [old + (new - old) * move, np.full(per_dwell, new)]
-        window += [np.full(per_ramp, -1), np.full(per_dwell, number)]
+        level += [old + (new - old) * move, np.full(per_dwell[number], new)]
+        window += [np.full(per_ramp, -1), np.full(per_dwell[number], number)]
     level = np.concatenate(level)
     return np.arange(level.size) * plan.interval_s, level, np.concatenate(window)
 
