@@ -46,6 +46,8 @@ class Plateaus:
     """(K,) rows in it."""
     flow_m3_s: Array
     """(K,) mean flow [m³/s]."""
+    flow_slope_m3_s2: Array
+    """(K,) rate of change of the flow over the plateau [m³/s²]."""
     pressure_pa: Array
     """(T, K) mean gauge pressure at each tap [Pa]."""
     temperature_degc: Array

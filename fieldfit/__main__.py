@@ -1,0 +1,5 @@
+"""`python -m fieldfit`."""
+
+from fieldfit.cli import main
+
+raise SystemExit(main())

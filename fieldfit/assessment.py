@@ -1,0 +1,102 @@
+"""The main job, top to bottom: a section and its logs in, a finding out."""
+
+from __future__ import annotations
+
+import datetime as dt
+from pathlib import Path
+
+import numpy as np
+
+from fieldfit.decisions.new_pipe import compare_with_new
+from fieldfit.errors import InputError
+from fieldfit.field.log_file import read_log
+from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
+from fieldfit.field.reaches import reach_readings
+from fieldfit.field.readings import ReachReadings
+from fieldfit.field.section import Section
+from fieldfit.field.section_file import read_section
+from fieldfit.hydraulics.friction import STANDARD_GRAVITY
+from fieldfit.inference.estimate import estimate
+from fieldfit.report.cautions import cautions
+from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+
+
+def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
+    """Find out what has become of a pipe.
+
+    Parameters
+    ----------
+    section : path or Section
+        The section file, or the folder that holds it.
+    *logs : path
+        Logs, one per campaign; without any, those that the section file names, else the folder's only CSV file.
+
+    Returns
+    -------
+    Finding
+        Everything found; it shows itself as a page in a notebook.
+
+    Raises
+    ------
+    InputError
+        When a file cannot be used; the message says where and what to do.
+    """
+    known = section if isinstance(section, Section) else read_section(Path(section))
+    campaigns = [assess_campaign(known, path, date) for path, date in logs_to_read(known, logs)]
+    return Finding(section=known, campaigns=tuple(campaigns))
+
+
+def assess_campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
+    """Take one log from its rows to what is found of each reach."""
+    log = read_log(path, section)
+    screening = screen(log, section)
+    plateaus = summarise(log, screening, section, _weight(section))
+    readings = [reach_readings(plateaus, section, reach) for reach in range(len(section.taps) - 1)]
+    screening = set_plateaus_aside(screening, _of_no_reach(readings))
+    reaches = tuple(_assess_reach(section, of_reach) for of_reach in readings)
+    return CampaignFinding(
+        date=date or (log.start.date() if log.start else None),
+        log=log,
+        screening=screening,
+        plateaus=plateaus,
+        reaches=reaches,
+        cautions=cautions(section, log, screening, plateaus, reaches),
+    )
+
+
+def logs_to_read(section: Section, given: tuple[str | Path, ...]) -> list[tuple[Path, dt.date | None]]:
+    """Return the logs to read with their dates: those given, else the section's campaigns, else the only CSV file."""
+    folder = section.path.parent
+    if given:
+        return [(Path(path), None) for path in given]
+    if section.campaigns:
+        return [(folder / campaign.log, campaign.date) for campaign in section.campaigns]
+    found = sorted(path for path in folder.glob("*.csv") if path.is_file())
+    if len(found) == 1:
+        return [(found[0], None)]
+    listed = ", ".join(f"'{path.name}'" for path in found) or "no CSV file"
+    raise InputError(
+        f"no log was named, and the folder holds {listed}",
+        "Name the log on the command line, or add a [[campaign]] table with its date and log.",
+        str(section.path),
+    )
+
+
+def _weight(section: Section) -> float:
+    """Return a typical weight of the liquid, ρg [Pa/m], for what needs it only roughly."""
+    temperature = section.temperature.value if section.temperature else 15.0
+    return float(section.liquid.density_kg_m3(np.array([temperature]))[0]) * STANDARD_GRAVITY
+
+
+def _of_no_reach(readings: list[ReachReadings]) -> dict[int, str]:
+    """Return the plateaus that no reach can use, with the first reach's reason."""
+    reasons = [dict(of_reach.set_aside) for of_reach in readings]
+    return {number: why for number, why in reasons[0].items() if all(number in other for other in reasons)}
+
+
+def _assess_reach(section: Section, readings: ReachReadings) -> ReachFinding:
+    """Estimate one reach's wall and compare it with new pipe."""
+    wall = estimate(readings, section.correlation)
+    material = section.material
+    new_pipe = compare_with_new(wall, material, section.bore.value, section.correlation) if material else None
+    return ReachFinding(readings=readings, wall=wall, new_pipe=new_pipe)

@@ -1,0 +1,96 @@
+"""Words in, words and exit status out."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import Annotated
+
+import typer
+
+from fieldfit import __version__
+from fieldfit.errors import InputError
+
+app = typer.Typer(
+    add_completion=False,
+    no_args_is_help=True,
+    pretty_exceptions_enable=False,
+    help="From field readings of flow and pressure to what has become of a pipe.",
+)
+
+NO_ANSWER = 1
+BAD_INPUT = 2
+
+
+def _show_version(wanted: bool) -> None:
+    """Print the version and stop."""
+    if wanted:
+        typer.echo(f"fieldfit {__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def common(
+    version: Annotated[
+        bool, typer.Option("--version", callback=_show_version, is_eager=True, help="Print the version.")
+    ] = False,
+) -> None:
+    """From field readings of flow and pressure to what has become of a pipe."""
+
+
+@app.command(epilog="Example: fieldfit assess kiln-supply 2026-05-12.csv --json finding.json")
+def assess(
+    section: Annotated[Path, typer.Argument(help="Folder of the test section, or its section.toml.")],
+    logs: Annotated[list[Path] | None, typer.Argument(help="Logs to use instead of the folder's own.")] = None,
+    out: Annotated[Path, typer.Option("--out", help="Folder for the reports.")] = Path("reports"),
+    json: Annotated[Path | None, typer.Option("--json", help="Write the record to this file too.")] = None,
+) -> None:
+    """Work back from a log to the pipe's roughness and C, and say what it means."""
+    from fieldfit.assessment import assess as run
+    from fieldfit.report.files import write_json, write_reports
+    from fieldfit.report.summary import summary
+
+    finding = run(section, *(logs or ()))
+    written = write_reports(finding, out)
+    if json is not None:
+        written = (*written, write_json(finding, json))
+    typer.echo(summary(finding))
+    for path in written:
+        typer.echo(f"Written: {path}", err=True)
+    if not finding.answered:
+        raise typer.Exit(NO_ANSWER)
+
+
+@app.command(epilog="Example: fieldfit start kiln-supply")
+def start(
+    folder: Annotated[Path, typer.Argument(help="Folder of the new test section; made when it is not there.")],
+) -> None:
+    """Write a commented section file to fill in."""
+    from fieldfit.field.blank_section import write_blank_section
+
+    path = write_blank_section(folder)
+    typer.echo(f"Written: {path}")
+    typer.echo("Fill it in, put the log beside it, then run: fieldfit assess " + str(folder))
+
+
+def main(argv: list[str] | None = None) -> int:
+    """Run a command and return its exit status.
+
+    Parameters
+    ----------
+    argv : list of str, optional
+        Words after the program's name; those of the process by default.
+
+    Returns
+    -------
+    int
+        0 an answer was reached; 1 the readings allow none; 2 bad input or usage.
+    """
+    try:
+        app(args=sys.argv[1:] if argv is None else argv, prog_name="fieldfit")
+    except InputError as error:
+        typer.echo(f"{error}", err=True)
+        return BAD_INPUT
+    except SystemExit as end:
+        return end.code if isinstance(end.code, int) else 0
+    return 0

@@ -1,0 +1,204 @@
+"""From plateaus to the readings of each reach: levelled head losses and what goes with them."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.errors import InputError
+from fieldfit.field.readings import Levelling, Plateaus, ReachReadings
+from fieldfit.field.screens import CRITICAL, LAMINAR, NEGATIVE, UNRESOLVED, limit
+from fieldfit.field.section import Fitting, Section, Tap
+from fieldfit.field.uncertain import Uncertain
+from fieldfit.hydraulics.friction import STANDARD_GRAVITY
+
+Array = NDArray[np.float64]
+
+
+def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachReadings:
+    """Work out the head losses of one reach and set aside the plateaus that carry no roughness.
+
+    With a static in the log the gauges are levelled on it, drift between statics shared out over time; without
+    one the survey stands. The inertia of a slowly changing flow is taken off.
+
+    Parameters
+    ----------
+    plateaus : Plateaus
+        Plateaus of the campaign, statics included.
+    section : Section
+        The test section.
+    reach : int
+        The reach from tap `reach` to the next.
+
+    Returns
+    -------
+    ReachReadings
+
+    Raises
+    ------
+    InputError
+        When there is neither a static nor a surveyed elevation, or a fitting's place is needed and missing.
+    """
+    upstream, downstream = section.taps[reach], section.taps[reach + 1]
+    length = _length(upstream, downstream)
+    weight = section.liquid.density_kg_m3(plateaus.temperature_degc) * STANDARD_GRAVITY
+    random = np.maximum(plateaus.random_pa[reach] / weight, 1e-7)
+    levelling = _levelling(plateaus, section, reach, weight, random)
+    drop = _elevation_drop(upstream, downstream)
+    head = _head_loss(plateaus, reach, weight, drop)
+    if levelling:
+        head = head - _offsets(plateaus, head)
+    elif drop is None:
+        raise InputError(
+            f"the gauges at '{upstream.column}' and '{downstream.column}' have no surveyed elevation and the log has no "
+            "static",
+            'Write elevation = "1.20 m" for both taps, or take readings with the flow stopped.',
+            section.path.name,
+        )
+    head = head - length.value * plateaus.flow_slope_m3_s2 / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
+    standard = np.hypot(random, _level_standard(plateaus, section, reach, weight, levelling))
+    reasons = _reasons(plateaus, section, head, standard)
+    keep = ~plateaus.static & (reasons == "")
+    temperature = plateaus.temperature_degc[keep]
+    return ReachReadings(
+        upstream=upstream,
+        downstream=downstream,
+        meter=section.meter,
+        length=length,
+        bore=section.bore,
+        fitting_k=_fitting_k(section, reach),
+        elevation_drop=drop,
+        levelling=levelling,
+        number=plateaus.number[keep],
+        flow_m3_s=plateaus.flow_m3_s[keep],
+        head_loss_m=head[keep],
+        random_m=random[keep],
+        pressure_pa=plateaus.pressure_pa[reach : reach + 2, keep],
+        temperature_degc=temperature,
+        density_kg_m3=section.liquid.density_kg_m3(temperature),
+        viscosity_m2_s=section.liquid.viscosity_m2_s(temperature),
+        viscosity_standard=_viscosity_standard(section, temperature),
+        set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why),
+    )
+
+
+def _length(upstream: Tap, downstream: Tap) -> Uncertain:
+    """Return the distance between two taps [m]."""
+    return Uncertain(
+        value=downstream.station.value - upstream.station.value,
+        standard=float(np.hypot(upstream.station.standard, downstream.station.standard)),
+        shape=downstream.station.shape,
+        assumed=upstream.station.assumed or downstream.station.assumed,
+    )
+
+
+def _elevation_drop(upstream: Tap, downstream: Tap) -> Uncertain | None:
+    """Return the upper gauge's elevation less the lower one's [m]."""
+    if upstream.elevation is None or downstream.elevation is None:
+        return None
+    return Uncertain(
+        value=upstream.elevation.value - downstream.elevation.value,
+        standard=float(np.hypot(upstream.elevation.standard, downstream.elevation.standard)),
+        shape=downstream.elevation.shape,
+        assumed=upstream.elevation.assumed or downstream.elevation.assumed,
+    )
+
+
+def _head_loss(plateaus: Plateaus, reach: int, weight: Array, drop: Uncertain | None) -> Array:
+    """Return the head loss of each plateau by the survey [m], at its mean flow."""
+    difference = plateaus.pressure_pa[reach] - plateaus.pressure_pa[reach + 1] - plateaus.curvature_pa[reach]
+    return np.asarray(difference / weight + (drop.value if drop else 0.0))
+
+
+def _offsets(plateaus: Plateaus, head: Array) -> Array:
+    """Return the apparent loss at rest at the time of each plateau [m], in a line between the statics."""
+    middle = (plateaus.start_s + plateaus.end_s) / 2.0
+    return np.interp(middle, middle[plateaus.static], head[plateaus.static])
+
+
+def _levelling(plateaus: Plateaus, section: Section, reach: int, weight: Array, random: Array) -> Levelling | None:
+    """Return what the statics say of a reach; None without a static."""
+    static = plateaus.static
+    if not np.any(static):
+        return None
+    drop = _elevation_drop(section.taps[reach], section.taps[reach + 1])
+    at_rest = _head_loss(plateaus, reach, weight, drop)[static]
+    drift = float(at_rest[-1] - at_rest[0]) if len(at_rest) > 1 else None
+    pressure = np.mean(plateaus.pressure_pa[reach : reach + 2, static], axis=1)
+    gauges = _gauge_standard(section, reach, pressure[:, None]) / weight[0]
+    survey = drop.standard if drop else float("inf")
+    return Levelling(
+        offset_m=float(np.mean(at_rest)),
+        standard_m=float(np.sqrt(np.mean(random[static] ** 2) + (drift or 0.0) ** 2 / 12.0)),
+        drift_m=drift,
+        plateaus=int(np.count_nonzero(static)),
+        pressure_pa=(float(pressure[0]), float(pressure[1])),
+        expected_m=float(np.hypot(gauges[0], survey)),
+    )
+
+
+def _gauge_standard(section: Section, reach: int, pressure: Array) -> Array:
+    """Return the standard uncertainty of the difference of two gauges [Pa] at (2, K) pressures."""
+    upper = section.taps[reach].accuracy.standard_at(pressure[0])
+    lower = section.taps[reach + 1].accuracy.standard_at(pressure[1])
+    return np.asarray(np.hypot(upper, lower))
+
+
+def _level_standard(
+    plateaus: Plateaus, section: Section, reach: int, weight: Array, levelling: Levelling | None
+) -> Array:
+    """Return how well the zero of the head loss is known at each plateau [m]."""
+    if levelling:
+        return np.full(len(weight), levelling.standard_m)
+    drop = _elevation_drop(section.taps[reach], section.taps[reach + 1])
+    gauges = _gauge_standard(section, reach, plateaus.pressure_pa[reach : reach + 2]) / weight
+    return np.asarray(np.hypot(gauges, drop.standard if drop else 0.0))
+
+
+def _reasons(plateaus: Plateaus, section: Section, head: Array, standard: Array) -> NDArray[np.str_]:
+    """Return why a flowing plateau carries no roughness, empty where it does; the first reason counts."""
+    viscosity = section.liquid.viscosity_m2_s(plateaus.temperature_degc)
+    reynolds = 4.0 * plateaus.flow_m3_s / (np.pi * section.bore.value * viscosity)
+    clear = limit(section, "resolution") * standard
+    tests = (
+        (plateaus.static, ""),
+        (reynolds < limit(section, "laminar"), LAMINAR),
+        (reynolds < limit(section, "turbulent"), CRITICAL),
+        (head < -clear, NEGATIVE),
+        (head < clear, UNRESOLVED),
+    )
+    return np.select([test for test, _ in tests], [why for _, why in tests], default="").astype(np.str_)
+
+
+def _fitting_k(section: Section, reach: int) -> Uncertain:
+    """Return the sum of loss coefficients between two taps; like fittings share their error."""
+    within = [fitting for fitting in section.fittings if _between(fitting, section, reach)]
+    standards = [fitting.count * fitting.k.standard for fitting in within]
+    return Uncertain(
+        value=float(sum(fitting.count * fitting.k.value for fitting in within)),
+        standard=float(np.sqrt(np.sum(np.square(standards)))),
+        assumed=any(fitting.k.assumed for fitting in within),
+    )
+
+
+def _between(fitting: Fitting, section: Section, reach: int) -> bool:
+    """Return whether a fitting lies in the reach."""
+    if fitting.station is None:
+        if len(section.taps) > 2:
+            raise InputError(
+                f"the fitting '{fitting.name}' has no station, and there are {len(section.taps)} taps",
+                'Write station = "12 m" so that it is counted in the right reach.',
+                section.path.name,
+            )
+        return True
+    return section.taps[reach].station.value <= fitting.station < section.taps[reach + 1].station.value
+
+
+def _viscosity_standard(section: Section, temperature: Array) -> float:
+    """Return the relative standard uncertainty of the viscosity, temperature included [-]."""
+    if len(temperature) == 0:
+        return section.liquid.viscosity_standard
+    middle = np.array([float(np.mean(temperature))])
+    above, below = section.liquid.viscosity_m2_s(middle + 0.5), section.liquid.viscosity_m2_s(middle - 0.5)
+    per_kelvin = float(np.log(above / below)[0])
+    return float(np.hypot(section.liquid.viscosity_standard, per_kelvin * section.temperature_standard))

@@ -1,0 +1,202 @@
+"""The fit of one reach: the wall and all shared errors at once, and profile-likelihood intervals."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.hydraulics.friction import smooth
+from fieldfit.inference.friction_curve import highest_ln_friction
+from fieldfit.inference.head_model import HeadModel, friction_by_definition, reynolds_of
+
+Array = NDArray[np.float64]
+
+NORMAL_95 = 1.959963984540054
+"""Two-sided 95 % point of the normal distribution."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Fit:
+    """The best wall and shared errors for one reach; K readings, M shared errors."""
+
+    model: HeadModel
+    """The equation fitted."""
+    active: NDArray[np.bool_]
+    """(M,) which shared errors were free: without the correlation's level it is a measurement."""
+    ln_friction: float
+    """Best ln f at the reference [-]."""
+    u: Array
+    """(M,) fitted shared errors in standard deviations, zero where not free [-]."""
+    random_m: Array
+    """(K,) random standard errors used, widened where the fit asked for it [m]."""
+    chi_square: float
+    """Misfit at the best point: readings and shared errors together [-]."""
+    reduced_chi_square: float | None
+    """χ² over degrees of freedom before any widening [-]; None with a single reading."""
+    interval: tuple[float, float]
+    """95 % profile-likelihood interval of ln f at the reference [-]."""
+    share: Array
+    """(M + 1,) share of each shared error, and last of the readings' noise, in the variance of ln f [-]."""
+    standard: float
+    """Linearised standard uncertainty of ln f [-]."""
+
+
+def fit_reach(model: HeadModel, active: NDArray[np.bool_], random_m: Array | None = None) -> Fit:
+    """Fit one reach by least squares with the shared errors as parameters of their own.
+
+    Every shared error adds one residual, its own value in standard deviations, so that stated accuracies act as
+    priors. Where the readings scatter more than their random errors allow (reduced χ² above 1) these are widened
+    and the fit is done again; they are never narrowed.
+
+    Parameters
+    ----------
+    model : HeadModel
+        The equation, with its readings.
+    active : (M,) bool array
+        Shared errors that are free.
+    random_m : (K,) array, optional
+        Random standard errors [m]; those of the readings by default.
+
+    Returns
+    -------
+    Fit
+    """
+    noise = model.readings.random_m if random_m is None else random_m
+    ln_friction, u = _least_squares(model, active, noise)
+    chi_square = _chi_square(model, noise, ln_friction, u)
+    freedom = len(noise) - 1
+    reduced = chi_square / freedom if freedom else None
+    if random_m is None and reduced is not None and reduced > 1.0:
+        noise = noise * np.sqrt(reduced)
+        ln_friction, u = _least_squares(model, active, noise)
+        chi_square = _chi_square(model, noise, ln_friction, u)
+    share, standard = _linearised(model, active, noise, ln_friction, u)
+    return Fit(
+        model=model,
+        active=active,
+        ln_friction=ln_friction,
+        u=u,
+        random_m=noise,
+        chi_square=chi_square,
+        reduced_chi_square=reduced,
+        interval=_profile(model, active, noise, (ln_friction, u), standard),
+        share=share,
+        standard=standard,
+    )
+
+
+def _least_squares(model: HeadModel, active: NDArray[np.bool_], noise: Array) -> tuple[float, Array]:
+    """Minimise with lmfit; return ln f and the shared errors."""
+    import lmfit
+
+    parameters = lmfit.Parameters()
+    parameters.add("ln_friction", value=_first_guess(model))
+    names = [f"u{index}" for index in np.flatnonzero(active)]
+    for name in names:
+        parameters.add(name, value=0.0)
+
+    def unpack(values: Any) -> tuple[float, Array]:
+        u = np.zeros(len(active))
+        u[active] = [values[name].value for name in names]
+        return _bounded(model, values["ln_friction"].value), u
+
+    def residual(values: Any) -> Array:
+        ln_friction, u = unpack(values)
+        misfit = (model.readings.head_loss_m - model.predict(ln_friction, u).head_m) / noise
+        return np.concatenate([misfit, u[active]])
+
+    def slopes(values: Any) -> Array:
+        return _jacobian(model, active, noise, *unpack(values))
+
+    found = lmfit.minimize(
+        residual, parameters, method="leastsq", scale_covar=False, Dfun=slopes, col_deriv=True, xtol=1e-12, ftol=1e-12
+    )
+    return unpack(found.params)
+
+
+def _bounded(model: HeadModel, ln_friction: float) -> float:
+    """Keep ln f where the curve is followed; a best value at the end is told apart by its roughness later."""
+    return min(ln_friction, float(highest_ln_friction(np.array(model.reference.reynolds))))
+
+
+def _first_guess(model: HeadModel) -> float:
+    """Start from the largest loss, which knows f best; from smooth pipe where it makes no sense."""
+    _, factor = friction_by_definition(model.readings)
+    guess = float(factor[np.argmax(model.readings.head_loss_m)])
+    at_smooth = float(smooth(np.array(reynolds_of(model.readings).max())))
+    return _bounded(model, float(np.log(guess if guess > 0.2 * at_smooth else at_smooth)))
+
+
+def _jacobian(model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, u: Array) -> Array:
+    """Return (1 + M_free, K + M_free) slopes of the residuals, parameters along the first axis."""
+    prediction = model.predict(ln_friction, u)
+    free = int(np.count_nonzero(active))
+    slopes = np.zeros((1 + free, len(noise) + free))
+    slopes[0, : len(noise)] = -prediction.by_wall / noise
+    slopes[1:, : len(noise)] = -prediction.by_error[active] / noise
+    slopes[1:, len(noise) :] = np.eye(free)
+    return slopes
+
+
+def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> float:
+    """Return the misfit of readings and shared errors together."""
+    misfit = (model.readings.head_loss_m - model.predict(ln_friction, u).head_m) / noise
+    return float(misfit @ misfit + u @ u)
+
+
+def _linearised(
+    model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, u: Array
+) -> tuple[Array, float]:
+    """Return each error's share in the variance of ln f, noise last, and the standard uncertainty.
+
+    The estimate is, near the best point, a linear function of the readings and of the priors' zeros, each of unit
+    variance; the squares of its coefficients are the contributions and add up to the whole.
+    """
+    slopes = _jacobian(model, active, noise, ln_friction, u)
+    coefficient = np.linalg.solve(slopes @ slopes.T, slopes)[0]
+    squares = coefficient**2
+    share = np.zeros(len(active) + 1)
+    share[:-1][active] = squares[len(noise) :]
+    share[-1] = np.sum(squares[: len(noise)])
+    variance = float(np.sum(squares))
+    return share / variance, float(np.sqrt(variance))
+
+
+def _profile(
+    model: HeadModel, active: NDArray[np.bool_], noise: Array, best: tuple[float, Array], standard: float
+) -> tuple[float, float]:
+    """Find where χ², minimised over the shared errors, has risen by the 95 % point of one degree of freedom."""
+    from scipy.optimize import brentq
+
+    ln_friction, u_best = best
+    floor = _chi_square(model, noise, ln_friction, u_best)
+    ends = []
+    for sign in (-1.0, 1.0):
+
+        def rise(distance: float, sign: float = sign) -> float:
+            at = ln_friction + sign * distance
+            return _chi_square(model, noise, at, _best_errors(model, active, noise, at, u_best)) - floor - NORMAL_95**2
+
+        far = NORMAL_95 * standard
+        while rise(far) < 0.0 and far < 20.0:
+            far *= 1.5
+        ends.append(ln_friction + sign * (float(brentq(rise, 0.0, far, xtol=1e-10, rtol=1e-10)) if far < 20.0 else far))
+    return ends[0], ends[1]
+
+
+def _best_errors(model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, start: Array) -> Array:
+    """Minimise over the shared errors alone by Gauss–Newton; the model is nearly linear in them."""
+    u = start
+    for _ in range(20):
+        prediction = model.predict(ln_friction, u)
+        slopes = prediction.by_error[active] / noise
+        misfit = (model.readings.head_loss_m - prediction.head_m) / noise
+        step = np.linalg.solve(slopes @ slopes.T + np.eye(len(slopes)), slopes @ misfit - u[active])
+        u = u.copy()
+        u[active] += step
+        if np.max(np.abs(step), initial=0.0) < 1e-9:
+            break
+    return u

@@ -1,0 +1,174 @@
+"""What the reader must know beside the answer: small checks, each with its limit, each ending in what to do."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from fieldfit.field.log import Log
+from fieldfit.field.readings import Plateaus, ReachReadings, Screening
+from fieldfit.field.section import Section
+from fieldfit.report.finding import Caution, ReachFinding
+
+STATIC_DISAGREEMENT = 2.5
+"""Standard uncertainties by which statics may differ from survey and gauges."""
+DRIFT_SHARE = 0.05
+"""Share of the smallest head loss that the levelling may drift."""
+SCATTER = 3.0
+"""Reduced χ² from which the readings do not follow one curve."""
+PULL = 2.5
+"""Standard uncertainties by which a stated accuracy may be exceeded in the fit."""
+FITTINGS_SHARE = 0.2
+"""Share of the head loss that fittings may make."""
+FLOW_RANGE = 1.5
+"""Largest over smallest flow under which the readings cannot show a wrong zero."""
+SET_ASIDE_SHARE = 0.5
+"""Share of rows set aside from which the log itself is in question."""
+CROSS_CHECK = 0.15
+"""Relative difference in width between the two ways to the interval."""
+
+
+def cautions(
+    section: Section, log: Log, screening: Screening, plateaus: Plateaus, reaches: tuple[ReachFinding, ...]
+) -> tuple[Caution, ...]:
+    """Run every check on a campaign and return what it has to say, most weighty first."""
+    found: list[Caution] = []
+    for reach in reaches:
+        prefix = f"{reach.readings.upstream.column} to {reach.readings.downstream.column}: " if len(reaches) > 1 else ""
+        found += [Caution(about=one.about, text=prefix + one.text) for one in _of_reach(reach, section)]
+    found += _of_log(section, log, screening, plateaus)
+    return tuple(found)
+
+
+def _of_reach(reach: ReachFinding, section: Section) -> Iterator[Caution]:
+    """Check one reach."""
+    if reach.wall.state == "no estimate":
+        yield Caution(about="no estimate", text=reach.wall.because)
+    yield from _statics(reach.readings)
+    yield from _gauge_range(reach.readings)
+    yield from _fit(reach)
+    yield from _coverage(reach)
+    yield from _against_new(reach, section)
+
+
+def _statics(readings: ReachReadings) -> Iterator[Caution]:
+    """Check the levelling against survey and gauges, and its drift."""
+    levelling = readings.levelling
+    if levelling is None:
+        yield Caution(
+            about="static",
+            text="The log has no zero-flow reading, so the gauges' zeros and the survey count in full. "
+            "A few minutes with the flow stopped, before and after, would level them.",
+        )
+        return
+    if abs(levelling.offset_m) > STATIC_DISAGREEMENT * levelling.expected_m:
+        yield Caution(
+            about="static",
+            text=f"At rest the gauges disagree with the surveyed elevations by {levelling.offset_m:+.2f} m, where their "
+            f"stated limits allow about {2.0 * levelling.expected_m:.2f} m. The static was believed. "
+            "Check elevations, gauge zeros and whether water really stood still.",
+        )
+    smallest = float(np.min(np.abs(readings.head_loss_m), initial=np.inf))
+    if levelling.drift_m is not None and abs(levelling.drift_m) > DRIFT_SHARE * smallest:
+        yield Caution(
+            about="static",
+            text=f"The gauges drifted by {levelling.drift_m:+.3f} m against each other between the first and the last "
+            f"static; the smallest head loss used is {smallest:.2f} m. The drift was shared out over time.",
+        )
+
+
+def _gauge_range(readings: ReachReadings) -> Iterator[Caution]:
+    """Check that no gauge was read beyond its range."""
+    for tap, pressure in zip((readings.upstream, readings.downstream), readings.pressure_pa, strict=True):
+        span, highest = tap.accuracy.span, float(np.max(pressure, initial=0.0))
+        if span is not None and highest > span:
+            yield Caution(
+                about="gauge",
+                text=f"Gauge '{tap.gauge or tap.column}' was read at {highest / 1e5:.2f} bar, beyond its range of "
+                f"{span / 1e5:.2f} bar: its stated accuracy does not hold there.",
+            )
+
+
+def _fit(reach: ReachFinding) -> Iterator[Caution]:
+    """Check whether one curve and the stated accuracies explain the readings."""
+    wall = reach.wall
+    if wall.reduced_chi_square is not None and wall.reduced_chi_square > SCATTER:
+        yield Caution(
+            about="fit",
+            text=f"The readings scatter about the best curve more than their noise and stated errors explain (reduced χ² "
+            f"{wall.reduced_chi_square:.1f}); the random part was widened to match. One roughness may not be the whole "
+            "story: look at the residuals.",
+        )
+    for entry in wall.budget:
+        if abs(entry.pull) > PULL:
+            yield Caution(
+                about="fit",
+                text=f"To fit the readings, '{entry.error}' had to be {abs(entry.pull):.1f} times its stated standard "
+                "uncertainty. Check that instrument or dimension.",
+            )
+    check = wall.monte_carlo
+    if check is not None and wall.friction_factor.measurement is not None:
+        low, high = wall.friction_factor.measurement
+        width = np.log(check.friction_factor[1] / check.friction_factor[0]) / np.log(high / low)
+        if check.unconverged or abs(width - 1.0) > CROSS_CHECK:
+            yield Caution(
+                about="interval",
+                text=f"Propagating the stated distributions gives a measurement band {width:.2f} times as wide as the "
+                "likelihood does: take the wider one.",
+            )
+
+
+def _coverage(reach: ReachFinding) -> Iterator[Caution]:
+    """Check whether the flows tested can show what is wrong."""
+    readings, wall = reach.readings, reach.wall
+    if wall.state == "no estimate" or wall.plateaus is None:
+        return
+    flow = readings.flow_m3_s
+    if float(np.max(flow) / np.min(flow)) < FLOW_RANGE:
+        count = "One flow" if len(flow) == 1 else "Flows"
+        verb = "was" if len(flow) == 1 else "of nearly one size were"
+        yield Caution(
+            about="flows",
+            text=f"{count} {verb} tested: a wrong zero, a leak or a half-shut valve would look just like roughness. "
+            "Test at flows that differ by a factor of three.",
+        )
+    share = 1.0 - float(np.min(wall.plateaus.friction_loss_m / readings.head_loss_m))
+    if share > FITTINGS_SHARE:
+        yield Caution(
+            about="fittings",
+            text=f"Fittings make {100.0 * share:.0f} % of the head loss by their stated K: what is said of the wall "
+            "stands on them. Taps on straight pipe would free it.",
+        )
+
+
+def _against_new(reach: ReachFinding, section: Section) -> Iterator[Caution]:
+    """Check that a comparison with new pipe was possible and makes sense."""
+    if section.material is None:
+        yield Caution(
+            about="material",
+            text="The material is not known, so there is no comparison with new pipe.",
+        )
+    new = reach.new_pipe
+    if new is not None and new.head_loss_ratio[2] < 1.0:
+        yield Caution(
+            about="new pipe",
+            text=f"The head loss is {new.head_loss_ratio[1]:.2f} of new {new.material}'s, less than any new pipe should "
+            "lose: check bore, meter and material.",
+        )
+
+
+def _of_log(section: Section, log: Log, screening: Screening, plateaus: Plateaus) -> Iterator[Caution]:
+    """Check the log itself."""
+    rows = len(log.reason)
+    aside = rows - screening.used
+    if aside > SET_ASIDE_SHARE * rows:
+        reasons = ", ".join(f"{why} {count}" for why, count in screening.counts)
+        yield Caution(about="log", text=f"{aside} of {rows} rows were set aside ({reasons}).")
+    if section.meter.senses == "velocity":
+        yield Caution(
+            about="meter",
+            text="The meter senses velocity: its flow was taken to be computed with the section's as-new bore.",
+        )
+    if np.all(plateaus.static):
+        yield Caution(about="log", text="Every steady stretch of the log is static: no flow, no friction.")
