@@ -61,7 +61,7 @@ name = "Lantern Row main"
 material = "cast iron"
 installed = 1931-06-01
 bore = "6.00 in ± 1 %"
-temperature = "52 degF ± 2 delta_degF"
+temperature = "52 degF ± 2 degF"
 
 [flow]
 column = "Q"
@@ -71,14 +71,14 @@ accuracy = "2 % of reading"
 column = "P1"
 station = "0 ft ± 1 ft"
 elevation = "212.4 ft ± 0.1 ft"
-accuracy = "0.5 % of 100 psi"
+accuracy = "ASME B40.100 grade 2A, 0-100 psi"
 gauge = "LR-1"
 
 [[tap]]
 column = "P2"
 station = "984 ft ± 1 ft"
 elevation = "207.9 ft ± 0.1 ft"
-accuracy = "0.5 % of 100 psi"
+accuracy = "ASME B40.100 grade 2A, 0-100 psi"
 gauge = "LR-2"
 """
 
@@ -132,14 +132,14 @@ senses = "velocity"                # clamp-on: it was told the bore above
 column = "upstream"
 station = "0 m ± 0.1 m"
 elevation = "4.10 m ± 0.02 m"
-accuracy = "0.6 % of 6 bar"
+accuracy = "EN 837-1 class 0.6 of 6 bar"
 gauge = "CP-1"
 
 [[tap]]
 column = "downstream"
 station = "126 m ± 0.1 m"
 elevation = "9.85 m ± 0.02 m"
-accuracy = "0.6 % of 6 bar"
+accuracy = "EN 837-1 class 0.6 of 6 bar"
 gauge = "CP-2"
 """
 
