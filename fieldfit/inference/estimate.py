@@ -12,7 +12,7 @@ from fieldfit.field.section import Correlation
 from fieldfit.hydraulics.friction import relative_roughness, smooth
 from fieldfit.hydraulics.friction_laws import LAWS, relative_roughness_by_law
 from fieldfit.hydraulics.hazen_williams import c_from_friction_factor
-from fieldfit.inference.fit import Fit, fit_reach
+from fieldfit.inference.fit import NORMAL_95, Fit, fit_reach
 from fieldfit.inference.head_model import HeadModel, head_model
 from fieldfit.inference.monte_carlo import monte_carlo
 from fieldfit.inference.plateau_values import plateau_values
@@ -28,6 +28,7 @@ ONE_SIDED_95 = 0.05
 
 NOTHING = Band(best=None, measurement=None, with_correlation=None)
 READINGS_NOISE = "scatter of the readings"
+CORRELATION = "friction correlation"
 
 
 class Verdict(NamedTuple):
@@ -58,72 +59,80 @@ def estimate(readings: ReachReadings, limit: Correlation) -> Wall:
     values = plateau_values(model)
     if np.all(values.friction_loss_m < 2.0 * values.friction_loss_standard_m):
         return _without_fit(model, values)
-    with_correlation = fit_reach(model, np.ones(len(model.errors.names), dtype=np.bool_))
-    measurement = fit_reach(model, ~model.errors.level, with_correlation.random_m)
-    verdict = _verdict(model, measurement, with_correlation)
+    fit = fit_reach(model)
+    wide = _with_correlation(fit, limit.standard)
+    verdict = _verdict(fit, wide)
     return Wall(
         state=verdict.state,
         because=verdict.because,
-        roughness_m=_roughness(verdict.state, model, measurement, with_correlation),
-        hazen_williams_c=_c_band(model, measurement, with_correlation),
+        roughness_m=_roughness(verdict.state, fit, wide),
+        hazen_williams_c=_c_band(fit, wide),
         friction_factor=Band(
-            best=float(np.exp(measurement.ln_friction)),
-            measurement=_exp(measurement.interval),
-            with_correlation=_exp(with_correlation.interval),
+            best=float(np.exp(fit.ln_friction)), measurement=_exp(fit.interval), with_correlation=_exp(wide)
         ),
-        reduced_chi_square=with_correlation.reduced_chi_square,
-        budget=_budget(measurement, with_correlation),
-        plateaus=plateau_values(model, measurement),
-        monte_carlo=monte_carlo(with_correlation),
-        other_laws=_other_laws(measurement),
+        reduced_chi_square=fit.reduced_chi_square,
+        budget=_budget(fit, limit.standard),
+        plateaus=plateau_values(model, fit),
+        monte_carlo=monte_carlo(fit, limit.standard),
+        other_laws=_other_laws(fit),
         **_place(model),
     )
 
 
-def _verdict(model: HeadModel, measurement: Fit, with_correlation: Fit) -> Verdict:
+def _with_correlation(fit: Fit, standard: float) -> Span:
+    """Return the interval of the Colebrook-equivalent ln f with the correlation's level added [-].
+
+    The level shifts every reading alike and the readings know nothing of it, so each side widens in quadrature.
+    """
+    level = NORMAL_95 * standard
+    below, above = fit.ln_friction - fit.interval[0], fit.interval[1] - fit.ln_friction
+    return fit.ln_friction - float(np.hypot(below, level)), fit.ln_friction + float(np.hypot(above, level))
+
+
+def _verdict(fit: Fit, wide: Span) -> Verdict:
     """Decide the state by rule."""
-    at_smooth = _ln_smooth(model)
-    best = measurement.ln_friction
-    if best < at_smooth + np.log(SMOOTHEST_SHARE) and measurement.interval[1] < at_smooth:
+    at_smooth = _ln_smooth(fit.model)
+    best, bore = fit.ln_friction, fit.model.readings.bore.value
+    if best < at_smooth + np.log(SMOOTHEST_SHARE) and fit.interval[1] < at_smooth:
         return Verdict(
             "no estimate",
             f"The friction factor reads {np.exp(best - at_smooth):.2f} of a perfectly smooth pipe's, further below it "
-            "than the stated errors allow: a fault in the data, not a good pipe. Check meter, units, bore and the order "
-            "of the gauges.",
+            "than the stated errors allow: a fault in the data, not a good pipe. Check meter, units, bore and the "
+            "order of the gauges.",
         )
-    wall = _roughness_at(model, best)
-    if wall > ROUGHEST_WALL * model.readings.bore.value:
+    wall = _roughness_at(fit.model, best) / bore
+    if wall > ROUGHEST_WALL:
         return Verdict(
             "no estimate",
-            f"Read as roughness the loss would need ε/D of {wall / model.readings.bore.value:.2g}, above "
-            f"{ROUGHEST_WALL:g}: that is not a roughness. Look for a smaller bore, a local loss or a wrong unit.",
+            f"Read as roughness the loss would need ε/D of {wall:.2g}, above {ROUGHEST_WALL:g}: that is not a "
+            "roughness. Look for a smaller bore, a local loss or a wrong unit.",
         )
-    if with_correlation.interval[0] <= at_smooth:
+    if wide[0] <= at_smooth:
         return Verdict(
             "upper limit", "Within measurement errors and the correlation's limit the wall may be perfectly smooth."
         )
     return Verdict("measured", "The friction lies clear above a smooth pipe's.")
 
 
-def _roughness(state: State, model: HeadModel, measurement: Fit, with_correlation: Fit) -> Band:
+def _roughness(state: State, fit: Fit, wide: Span) -> Band:
     """Turn the intervals of ln f into roughness, by state."""
     if state == "no estimate":
         return NOTHING
     if state == "upper limit":
         return Band(
             best=None,
-            measurement=(0.0, _upper_limit(model, measurement)),
-            with_correlation=(0.0, _upper_limit(model, with_correlation)),
+            measurement=(0.0, _upper_limit(fit, fit.interval[1])),
+            with_correlation=(0.0, _upper_limit(fit, wide[1])),
         )
     return Band(
-        best=_roughness_at(model, measurement.ln_friction),
-        measurement=_roughness_span(model, measurement.interval),
-        with_correlation=_roughness_span(model, with_correlation.interval),
+        best=_roughness_at(fit.model, fit.ln_friction),
+        measurement=_roughness_span(fit.model, fit.interval),
+        with_correlation=_roughness_span(fit.model, wide),
     )
 
 
-def _upper_limit(model: HeadModel, fit: Fit) -> float:
-    """Return the 95 % upper limit of roughness [m].
+def _upper_limit(fit: Fit, high: float) -> float:
+    """Return the 95 % upper limit of roughness [m], from the upper end of a two-sided interval of ln f.
 
     The wall cannot be smoother than smooth, so only the part of the distribution above smooth counts: the limit
     cuts off 5 % of that part. It stays positive however far below smooth the readings fell (the CLs
@@ -131,9 +140,9 @@ def _upper_limit(model: HeadModel, fit: Fit) -> float:
     """
     from scipy.special import ndtr, ndtri
 
-    spread = (fit.interval[1] - fit.ln_friction) / float(ndtri(0.975))
-    above = float(ndtr((fit.ln_friction - _ln_smooth(model)) / spread))
-    return _roughness_at(model, fit.ln_friction - spread * float(ndtri(ONE_SIDED_95 * max(above, 1e-12))))
+    spread = (high - fit.ln_friction) / NORMAL_95
+    above = float(ndtr((fit.ln_friction - _ln_smooth(fit.model)) / spread))
+    return _roughness_at(fit.model, fit.ln_friction - spread * float(ndtri(ONE_SIDED_95 * max(above, 1e-12))))
 
 
 def _roughness_at(model: HeadModel, ln_friction: float) -> float:
@@ -152,39 +161,41 @@ def _c_at(model: HeadModel, ln_friction: float) -> float:
     return float(c_from_friction_factor(np.exp(ln_friction), model.reference.flow_m3_s, model.readings.bore.value))
 
 
-def _c_band(model: HeadModel, measurement: Fit, with_correlation: Fit) -> Band:
+def _c_band(fit: Fit, wide: Span) -> Band:
     """Turn the intervals of ln f into C; the larger f is the lower C."""
+    low, high = fit.interval
     return Band(
-        best=_c_at(model, measurement.ln_friction),
-        measurement=(_c_at(model, measurement.interval[1]), _c_at(model, measurement.interval[0])),
-        with_correlation=(_c_at(model, with_correlation.interval[1]), _c_at(model, with_correlation.interval[0])),
+        best=_c_at(fit.model, fit.ln_friction),
+        measurement=(_c_at(fit.model, high), _c_at(fit.model, low)),
+        with_correlation=(_c_at(fit.model, wide[1]), _c_at(fit.model, wide[0])),
     )
 
 
-def _budget(measurement: Fit, with_correlation: Fit) -> tuple[BudgetEntry, ...]:
-    """List the errors by share; terms of one name are added up."""
-    names = [*with_correlation.model.errors.names, READINGS_NOISE]
-    pulls = [*with_correlation.u, 0.0]
+def _budget(fit: Fit, correlation_standard: float) -> tuple[BudgetEntry, ...]:
+    """List the errors by share in ln ε, the correlation's level among them; terms of one name are added up."""
+    names = [*fit.model.errors.names, READINGS_NOISE, CORRELATION]
+    pulls = [*fit.u, 0.0, 0.0]
+    own = np.append(fit.share, 0.0)
+    variance = np.append(fit.share * fit.standard**2, correlation_standard**2)
     entries = []
     for name in dict.fromkeys(names):
         rows = [index for index, other in enumerate(names) if other == name]
-        share = float(np.sum(with_correlation.share[rows]))
         entries.append(
             BudgetEntry(
                 error=name,
-                share=share,
-                measurement_share=float(np.sum(measurement.share[rows])),
-                standard=float(np.sqrt(share)) * with_correlation.standard,
+                share=float(np.sum(variance[rows]) / np.sum(variance)),
+                measurement_share=float(np.sum(own[rows])),
+                standard=float(np.sqrt(np.sum(variance[rows]))),
                 pull=float(max((pulls[row] for row in rows), key=abs)),
             )
         )
     return tuple(sorted(entries, key=lambda entry: -entry.share))
 
 
-def _other_laws(measurement: Fit) -> tuple[tuple[str, float | None], ...]:
+def _other_laws(fit: Fit) -> tuple[tuple[str, float | None], ...]:
     """Return the roughness the same f at the reference means under each published law [m]."""
-    reynolds, bore = measurement.model.reference.reynolds, measurement.model.readings.bore.value
-    factor = float(np.exp(measurement.ln_friction))
+    reynolds, bore = fit.model.reference.reynolds, fit.model.readings.bore.value
+    factor = float(np.exp(fit.ln_friction))
     found = [(name, relative_roughness_by_law(name, factor, reynolds)) for name in LAWS]
     return tuple((name, None if relative is None else relative * bore) for name, relative in found)
 

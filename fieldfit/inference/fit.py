@@ -24,12 +24,10 @@ class Fit:
 
     model: HeadModel
     """The equation fitted."""
-    active: NDArray[np.bool_]
-    """(M,) which shared errors were free: without the correlation's level it is a measurement."""
     ln_friction: float
     """Best ln f at the reference [-]."""
     u: Array
-    """(M,) fitted shared errors in standard deviations, zero where not free [-]."""
+    """(M,) fitted shared errors in standard deviations [-]."""
     random_m: Array
     """(K,) random standard errors used, widened where the fit asked for it [m]."""
     chi_square: float
@@ -44,7 +42,7 @@ class Fit:
     """Linearised standard uncertainty of ln f [-]."""
 
 
-def fit_reach(model: HeadModel, active: NDArray[np.bool_], random_m: Array | None = None) -> Fit:
+def fit_reach(model: HeadModel) -> Fit:
     """Fit one reach by least squares with the shared errors as parameters of their own.
 
     Every shared error adds one residual, its own value in standard deviations, so that stated accuracies act as
@@ -55,61 +53,54 @@ def fit_reach(model: HeadModel, active: NDArray[np.bool_], random_m: Array | Non
     ----------
     model : HeadModel
         The equation, with its readings.
-    active : (M,) bool array
-        Shared errors that are free.
-    random_m : (K,) array, optional
-        Random standard errors [m]; those of the readings by default.
 
     Returns
     -------
     Fit
     """
-    noise = model.readings.random_m if random_m is None else random_m
-    ln_friction, u = _least_squares(model, active, noise)
+    noise = model.readings.random_m
+    ln_friction, u = _least_squares(model, noise)
     chi_square = _chi_square(model, noise, ln_friction, u)
     freedom = len(noise) - 1
     reduced = chi_square / freedom if freedom else None
-    if random_m is None and reduced is not None and reduced > 1.0:
+    if reduced is not None and reduced > 1.0:
         noise = noise * np.sqrt(reduced)
-        ln_friction, u = _least_squares(model, active, noise)
+        ln_friction, u = _least_squares(model, noise)
         chi_square = _chi_square(model, noise, ln_friction, u)
-    share, standard = _linearised(model, active, noise, ln_friction, u)
+    share, standard = _linearised(model, noise, ln_friction, u)
     return Fit(
         model=model,
-        active=active,
         ln_friction=ln_friction,
         u=u,
         random_m=noise,
         chi_square=chi_square,
         reduced_chi_square=reduced,
-        interval=_profile(model, active, noise, (ln_friction, u), standard),
+        interval=_profile(model, noise, (ln_friction, u), standard),
         share=share,
         standard=standard,
     )
 
 
-def _least_squares(model: HeadModel, active: NDArray[np.bool_], noise: Array) -> tuple[float, Array]:
+def _least_squares(model: HeadModel, noise: Array) -> tuple[float, Array]:
     """Minimise with lmfit; return ln f and the shared errors."""
     import lmfit
 
     parameters = lmfit.Parameters()
     parameters.add("ln_friction", value=_first_guess(model))
-    names = [f"u{index}" for index in np.flatnonzero(active)]
+    names = [f"u{index}" for index in range(len(model.errors.names))]
     for name in names:
         parameters.add(name, value=0.0)
 
     def unpack(values: Any) -> tuple[float, Array]:
-        u = np.zeros(len(active))
-        u[active] = [values[name].value for name in names]
-        return _bounded(model, values["ln_friction"].value), u
+        return _bounded(model, values["ln_friction"].value), np.array([values[name].value for name in names])
 
     def residual(values: Any) -> Array:
         ln_friction, u = unpack(values)
         misfit = (model.readings.head_loss_m - model.predict(ln_friction, u).head_m) / noise
-        return np.concatenate([misfit, u[active]])
+        return np.concatenate([misfit, u])
 
     def slopes(values: Any) -> Array:
-        return _jacobian(model, active, noise, *unpack(values))
+        return _jacobian(model, noise, *unpack(values))
 
     found = lmfit.minimize(
         residual, parameters, method="leastsq", scale_covar=False, Dfun=slopes, col_deriv=True, xtol=1e-12, ftol=1e-12
@@ -130,13 +121,13 @@ def _first_guess(model: HeadModel) -> float:
     return _bounded(model, float(np.log(guess if guess > 0.2 * at_smooth else at_smooth)))
 
 
-def _jacobian(model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, u: Array) -> Array:
-    """Return (1 + M_free, K + M_free) slopes of the residuals, parameters along the first axis."""
+def _jacobian(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> Array:
+    """Return (1 + M, K + M) slopes of the residuals, parameters along the first axis."""
     prediction = model.predict(ln_friction, u)
-    free = int(np.count_nonzero(active))
+    free = len(u)
     slopes = np.zeros((1 + free, len(noise) + free))
     slopes[0, : len(noise)] = -prediction.by_wall / noise
-    slopes[1:, : len(noise)] = -prediction.by_error[active] / noise
+    slopes[1:, : len(noise)] = -prediction.by_error / noise
     slopes[1:, len(noise) :] = np.eye(free)
     return slopes
 
@@ -147,27 +138,21 @@ def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
     return float(misfit @ misfit + u @ u)
 
 
-def _linearised(
-    model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, u: Array
-) -> tuple[Array, float]:
+def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> tuple[Array, float]:
     """Return each error's share in the variance of ln f, noise last, and the standard uncertainty.
 
     The estimate is, near the best point, a linear function of the readings and of the priors' zeros, each of unit
     variance; the squares of its coefficients are the contributions and add up to the whole.
     """
-    slopes = _jacobian(model, active, noise, ln_friction, u)
+    slopes = _jacobian(model, noise, ln_friction, u)
     coefficient = np.linalg.solve(slopes @ slopes.T, slopes)[0]
     squares = coefficient**2
-    share = np.zeros(len(active) + 1)
-    share[:-1][active] = squares[len(noise) :]
-    share[-1] = np.sum(squares[: len(noise)])
+    share = np.append(squares[len(noise) :], np.sum(squares[: len(noise)]))
     variance = float(np.sum(squares))
     return share / variance, float(np.sqrt(variance))
 
 
-def _profile(
-    model: HeadModel, active: NDArray[np.bool_], noise: Array, best: tuple[float, Array], standard: float
-) -> tuple[float, float]:
+def _profile(model: HeadModel, noise: Array, best: tuple[float, Array], standard: float) -> tuple[float, float]:
     """Find where χ², minimised over the shared errors, has risen by the 95 % point of one degree of freedom."""
     from scipy.optimize import brentq
 
@@ -178,7 +163,7 @@ def _profile(
 
         def rise(distance: float, sign: float = sign) -> float:
             at = ln_friction + sign * distance
-            return _chi_square(model, noise, at, _best_errors(model, active, noise, at, u_best)) - floor - NORMAL_95**2
+            return _chi_square(model, noise, at, _best_errors(model, noise, at, u_best)) - floor - NORMAL_95**2
 
         far = NORMAL_95 * standard
         while rise(far) < 0.0 and far < 20.0:
@@ -187,16 +172,15 @@ def _profile(
     return ends[0], ends[1]
 
 
-def _best_errors(model: HeadModel, active: NDArray[np.bool_], noise: Array, ln_friction: float, start: Array) -> Array:
+def _best_errors(model: HeadModel, noise: Array, ln_friction: float, start: Array) -> Array:
     """Minimise over the shared errors alone by Gauss–Newton; the model is nearly linear in them."""
     u = start
     for _ in range(20):
         prediction = model.predict(ln_friction, u)
-        slopes = prediction.by_error[active] / noise
+        slopes = prediction.by_error / noise
         misfit = (model.readings.head_loss_m - prediction.head_m) / noise
-        step = np.linalg.solve(slopes @ slopes.T + np.eye(len(slopes)), slopes @ misfit - u[active])
-        u = u.copy()
-        u[active] += step
+        step = np.linalg.solve(slopes @ slopes.T + np.eye(len(slopes)), slopes @ misfit - u)
+        u = u + step
         if np.max(np.abs(step), initial=0.0) < 1e-9:
             break
     return u

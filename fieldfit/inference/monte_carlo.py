@@ -16,16 +16,18 @@ SEED = 20260512
 ENDS = (0.025, 0.975)
 
 
-def monte_carlo(fit: Fit, draws: int = DRAWS, seed: int = SEED) -> MonteCarlo:
+def monte_carlo(fit: Fit, correlation_standard: float, draws: int = DRAWS, seed: int = SEED) -> MonteCarlo:
     """Propagate every error through the readings with its own distribution, limits as rectangles.
 
     Each draw is one more section in a batch: what flow, bore, head and the rest may truly have been, given what
-    was read. The correlation's level enters the second interval only.
+    was read.
 
     Parameters
     ----------
     fit : Fit
-        Best fit of the reach, correlation's level included.
+        Best fit of the reach.
+    correlation_standard : float
+        Standard uncertainty of the correlation's level [-]; it enters the second interval only.
     draws : int
         Number of draws.
     seed : int
@@ -37,26 +39,32 @@ def monte_carlo(fit: Fit, draws: int = DRAWS, seed: int = SEED) -> MonteCarlo:
         Intervals of f itself, not of its logarithm.
     """
     rng = np.random.default_rng(seed)
-    errors = fit.model.errors
-    rectangular = np.array([shape == "rectangular" for shape in errors.shapes])
-    u: Array = np.where(
-        rectangular[:, None],
-        rng.uniform(-np.sqrt(3.0), np.sqrt(3.0), (len(rectangular), draws)),
-        rng.standard_normal((len(rectangular), draws)),
-    )
+    shapes = fit.model.errors.shapes
+    limit = np.sqrt(3.0)
+    u = np.array(
+        [
+            rng.uniform(-limit, limit, draws) if shape == "rectangular" else rng.standard_normal(draws)
+            for shape in shapes
+        ]
+    ).reshape(len(shapes), draws)
     noise = fit.random_m[:, None] * rng.standard_normal((len(fit.random_m), draws))
-    spans = []
-    unconverged = 0
-    for active in (~errors.level, np.ones(len(rectangular), dtype=np.bool_)):
-        found, converged = solve_batch(
-            _batch(fit, np.where(active[:, None], u, 0.0), noise), _weight(fit, active), np.full(draws, fit.ln_friction)
-        )
-        unconverged += int(np.count_nonzero(~converged))
-        low, high = np.exp(np.quantile(found[converged], ENDS)) if np.any(converged) else (np.nan, np.nan)
-        spans.append((float(low), float(high)))
+    found, converged = solve_batch(_batch(fit, u, noise), _weight(fit), np.full(draws, fit.ln_friction))
+    level = correlation_standard * rng.standard_normal(draws)
     return MonteCarlo(
-        draws=draws, seed=seed, friction_factor=spans[0], with_correlation=spans[1], unconverged=unconverged
+        draws=draws,
+        seed=seed,
+        friction_factor=_span(found[converged]),
+        with_correlation=_span((found + level)[converged]),
+        unconverged=int(np.count_nonzero(~converged)),
     )
+
+
+def _span(ln_friction: Array) -> tuple[float, float]:
+    """Return the 95 % interval of f from draws of its logarithm [-]."""
+    if ln_friction.size == 0:
+        return float("nan"), float("nan")
+    low, high = np.exp(np.quantile(ln_friction, ENDS))
+    return float(low), float(high)
 
 
 def _batch(fit: Fit, u: Array, noise: Array) -> Batch:
@@ -75,10 +83,9 @@ def _batch(fit: Fit, u: Array, noise: Array) -> Batch:
     )
 
 
-def _weight(fit: Fit, active: NDArray[np.bool_]) -> Array:
+def _weight(fit: Fit) -> Array:
     """Return the generalised least-squares weights of the readings at the best point, (K, 1)."""
-    prediction = fit.model.predict(fit.ln_friction, np.zeros(len(active)))
-    by_error = prediction.by_error[active]
-    covariance = np.diag(fit.random_m**2) + by_error.T @ by_error
+    prediction = fit.model.predict(fit.ln_friction, np.zeros(len(fit.u)))
+    covariance = np.diag(fit.random_m**2) + prediction.by_error.T @ prediction.by_error
     weight = np.linalg.solve(covariance, prediction.by_wall)
     return np.asarray(weight[:, None] / np.sum(np.abs(weight)))

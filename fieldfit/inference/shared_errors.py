@@ -18,8 +18,7 @@ from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 
 Array = NDArray[np.float64]
 
-LEVEL = "friction correlation, level"
-SHAPE = "friction correlation, shape"
+SHAPE = "shape of the friction law"
 SHAPE_ORDERS = (1, 2)
 
 
@@ -44,12 +43,7 @@ class SharedErrors:
     head_m: Array
     """(M, K) change of the head loss as read [m]."""
     ln_friction: Array
-    """(M, K) change of ln f against the correlation [-]."""
-
-    @property
-    def level(self) -> NDArray[np.bool_]:
-        """(M,) which error is the correlation's level, the one no measurement holds."""
-        return np.array([name == LEVEL for name in self.names])
+    """(M, K) change of ln f against the correlation's shape [-]."""
 
 
 @dataclass(slots=True)
@@ -100,7 +94,7 @@ def shared_errors(readings: ReachReadings, ln_reynolds: Array, centre: float, li
     _add_meter(found, readings)
     _add_gauges(found, readings)
     _add_pipe(found, readings)
-    _add_correlation(found, (ln_reynolds - centre) / (limit.decades * np.log(10.0)), limit.standard)
+    _add_shape(found, (ln_reynolds - centre) / (limit.decades * np.log(10.0)), limit.standard)
     return SharedErrors(
         names=tuple(found.names),
         shapes=tuple(found.shapes),
@@ -179,13 +173,13 @@ def _add_pipe(found: _Collector, readings: ReachReadings) -> None:
     found.add("viscosity and temperature", "normal", ln_viscosity=np.asarray(readings.viscosity_standard))
 
 
-def _add_correlation(found: _Collector, distance: Array, standard: float) -> None:
-    """Add the correlation's error: the leading terms of a squared-exponential process in ln Re.
+def _add_shape(found: _Collector, distance: Array, standard: float) -> None:
+    """Add how the correlation's error changes with Re about the centre: a slope and a bend.
 
-    The terms are the process's own expansion about the centre, so their variances add up to one and the same
-    limit at every Reynolds number near it: a level, a slope and a bend.
+    They are the leading terms of a squared-exponential process in ln Re; its level, one at the centre, is left
+    out. The readings could only learn it from the curve's shape, which is just what a correlation does not
+    promise, so it is added to the result afterwards and no number of readings shrinks it.
     """
     decay = standard * np.exp(-0.5 * distance**2)
-    found.add(LEVEL, "normal", ln_friction=decay)
     for order in SHAPE_ORDERS:
         found.add(SHAPE, "normal", ln_friction=decay * distance**order / np.sqrt(float(order)))
