@@ -10,7 +10,7 @@ from statistics import NormalDist
 from fieldfit.errors import InputError
 from fieldfit.field.uncertain import Shape, Uncertain
 from fieldfit.field.unit_spellings import LARGEST, Dimension
-from fieldfit.field.units import Unit, shown, unit
+from fieldfit.field.units import Unit, is_unit, shown, unit
 
 _NUMBER = r"[+-]?(?:(?:[0-9]+[ -])?[0-9]+/[0-9]+|(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?)"
 _QUANTITY = re.compile(rf"({_NUMBER})\s*(.*)", re.DOTALL)
@@ -134,20 +134,29 @@ def part_spread(text: str) -> tuple[str, Spread]:
     return text[: found.start()].strip(), Spread(divisor=divisor, shape=shape)
 
 
+def measures(text: str, dimension: Dimension) -> bool:
+    """Return whether the value in a text has a unit of a dimension.
+
+    Examples
+    --------
+    >>> measures("32 cSt ± 2 %", "kinematic viscosity"), measures("28 cP", "kinematic viscosity")
+    (True, False)
+    """
+    found = _QUANTITY.fullmatch(_PLUS_MINUS.split(part_spread(_plain(text))[0])[0].strip())
+    return found is not None and is_unit(found[2], dimension)
+
+
 def remarks(text: str, dimension: Dimension) -> tuple[str, ...]:
     """Return sentences on what the units in a text leave open, such as which gallon.
 
     Examples
     --------
-    >>> len(remarks("50 gpm ± 1 gpm", "flow")), remarks("3 L/s", "flow")
+    >>> len(remarks("0.3 % of 50 gpm", "flow")), remarks("3 L/s", "flow")
     (1, ())
     """
-    spelled = (found[2] for part in _PLUS_MINUS.split(_plain(text)) if (found := _QUANTITY.fullmatch(part.strip())))
-    try:
-        said = (unit(part_spread(its)[0], dimension).remark for its in spelled if not its.startswith("%"))
-        return tuple(dict.fromkeys(sentence for sentence in said if sentence))
-    except InputError:
-        return ()
+    spelled = (found[1].strip() for found in re.finditer(rf"{_NUMBER}\s*([^0-9±+,;()]+)", _plain(text)))
+    said = (unit(its, dimension).remark for its in spelled if is_unit(its, dimension))
+    return tuple(dict.fromkeys(sentence for sentence in said if sentence))
 
 
 def _plain(text: str) -> str:

@@ -1,0 +1,91 @@
+"""Every key of a section file: what it means and how it is written."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from fieldfit.field.screens import LIMITS
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Key:
+    """One key of a section file."""
+
+    table: str
+    """Table it stands in; empty for the top of the file."""
+    name: str
+    """The key."""
+    example: str
+    """How its value is written, in TOML."""
+    meaning: str
+    """What it says, in one sentence without its stop."""
+    required: bool = False
+    """Whether the file is refused without it."""
+
+    @property
+    def line(self) -> str:
+        """The key as a line of the file."""
+        return f"{self.name} = {self.example}"
+
+
+def _key(place: str, example: str, meaning: str, required: bool = False) -> Key:
+    """Return a key from its dotted place."""
+    table, _, name = place.rpartition(".")
+    return Key(table=table, name=name, example=example, meaning=meaning, required=required)
+
+
+KEYS: tuple[Key, ...] = (
+    _key("name", '"Kiln cooling supply"', "printed name; file names are made from it", required=True),
+    _key("material", '"carbon steel"', 'picks the values of new pipe; "unknown" for no comparison with new'),
+    _key("installed", "2009-03-01", "day of laying"),
+    _key("bore", '"52.5 mm ± 0.2 mm"', "as-new inside diameter and its limit; this or pipe", required=True),
+    _key("pipe", '"NPS 2 schedule 40"', "pipe size that the bore is looked up for; this or bore"),
+    _key("fluid", '"water"', "what flows: water, a library's name, or a table with density and viscosity"),
+    _key(
+        "temperature", '"18 degC ± 1 degC"', "of the liquid, where the log has no such column; its limit holds for both"
+    ),
+    _key("fluid.name", '"gear oil"', "printed name of the liquid"),
+    _key("fluid.density", '"870 kg/m3"', "its density", required=True),
+    _key("fluid.viscosity", '"32 cSt"', "its viscosity, kinematic or dynamic by the unit", required=True),
+    _key("flow.column", '"flow"', "heading in the log, without its unit", required=True),
+    _key("flow.unit", '"L/s"', "unit of that column; it wins over the heading's"),
+    _key("flow.accuracy", '"0.5 % of reading"', "how far the meter may be off", required=True),
+    _key("flow.meter", '"MAG-118"', "serial; campaigns that name the same meter share its error"),
+    _key("flow.senses", '"volume"', '"velocity" for clamp-on and insertion meters that use the same bore'),
+    _key("tap.column", '"upstream"', "heading in the log, without its unit", required=True),
+    _key("tap.unit", '"kPa"', "unit of that column; it wins over the heading's"),
+    _key("tap.station", '"38.2 m ± 0.1 m"', "distance along the pipe, with the flow, and its limit", required=True),
+    _key("tap.elevation", '"1.20 m ± 0.02 m"', "of the gauge over any datum, and its limit"),
+    _key("tap.accuracy", '"0.25 % of 10 bar"', "how far the gauge may be off", required=True),
+    _key("tap.gauge", '"PG-07"', "serial of the gauge"),
+    _key("fitting.name", '"two long-radius bends"', "printed name"),
+    _key("fitting.k", '"0.5 ± 20 %"', "loss coefficient of one, on the velocity in the pipe; this or kind"),
+    _key("fitting.kind", '"gate valve, open"', "kind of fitting that K is looked up for; this or k"),
+    _key("fitting.count", "2", "how many there are"),
+    _key("fitting.station", '"12 m"', "distance along the pipe; needed with more than two taps"),
+    _key("campaign.date", "2026-05-12", "day of the test"),
+    _key("campaign.log", '"2026-05-12.csv"', "its log, beside this file", required=True),
+    _key("campaign.cleaned", "true", "whether the pipe was cleaned since the campaign before"),
+    _key("campaign.meter", '"MAG-205"', "serial of the meter, where it was another one"),
+    _key("duty.flow", '"3.0 L/s"', "flow the pipe must carry", required=True),
+    _key("correlation.standard_uncertainty", '"5 %"', "standard uncertainty of f from a friction correlation"),
+    _key("correlation.decades", "1.5", "range of Reynolds number over which its error keeps together, in decades"),
+    *(_key(f"screen.{limit.name}", f"{limit.value:g}", limit.meaning.rstrip(".")) for limit in LIMITS.values()),
+)
+"""Every key, table by table."""
+
+TABLES = ("flow", "duty", "correlation", "screen")
+"""Tables that may stand once."""
+LISTS = ("tap", "fitting", "campaign")
+"""Tables that may stand several times."""
+
+
+def keys_of(table: str) -> dict[str, Key]:
+    """Return the keys of a table by name.
+
+    Examples
+    --------
+    >>> list(keys_of("duty"))
+    ['flow']
+    """
+    return {key.name: key for key in KEYS if key.table == table}
