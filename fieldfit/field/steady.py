@@ -9,6 +9,8 @@ Array = NDArray[np.float64]
 
 BLOCKS = 3000
 """A longer record is averaged to this many blocks before it is cut."""
+LONG = 8
+"""Rows from which a stretch may be joined to its neighbour; the steps of a ramp are shorter."""
 MEMORY = 5
 """Rows apart at which the scatter of a record is judged."""
 
@@ -45,7 +47,7 @@ def steady_stretches(flow: Array, step: float) -> list[tuple[int, int]]:
     level = _relative_level(flow)
     means = np.add.reduceat(level, edges[:-1]) / np.diff(edges)
     cuts = _partition(means, np.diff(edges).astype(np.float64), _price(level, step))
-    return [(int(edges[first]), int(edges[stop])) for first, stop in cuts]
+    return _join([(int(edges[first]), int(edges[stop])) for first, stop in cuts], level, step)
 
 
 def _relative_level(flow: Array) -> Array:
@@ -61,6 +63,19 @@ def _price(level: Array, step: float) -> float:
     apart = np.abs(level[MEMORY:] - level[:-MEMORY])
     scatter = 1.4826 * float(np.median(apart)) / np.sqrt(2.0) if len(apart) else 0.0
     return max(4.0 * step**2, 12.0 * scatter**2)
+
+
+def _join(stretches: list[tuple[int, int]], level: Array, step: float) -> list[tuple[int, int]]:
+    """Join neighbouring stretches of some length that differ by less than a step: long ones part on very little."""
+    joined = stretches[:1]
+    for first, stop in stretches[1:]:
+        start = joined[-1][0]
+        long = min(first - start, stop - first) >= LONG
+        if long and abs(float(np.mean(level[start:first])) - float(np.mean(level[first:stop]))) < step:
+            joined[-1] = (start, stop)
+        else:
+            joined.append((first, stop))
+    return joined
 
 
 def _partition(means: Array, weight: Array, price: float) -> list[tuple[int, int]]:
