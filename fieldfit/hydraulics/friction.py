@@ -59,7 +59,7 @@ def laminar(reynolds: ArrayLike) -> Array:
 def smooth(reynolds: ArrayLike) -> Array:
     """Return the Darcy friction factor of a perfectly smooth pipe in turbulent flow.
 
-    It is Colebrook–White at zero roughness: 1/√f = −2 log10(2.51/(Re √f)), within 0.02 % of f from Prandtl's
+    It is Colebrook–White at zero roughness: 1/√f = −2 log10(2.51/(Re √f)), within 0.03 % of f from Prandtl's
     rounded 1/√f = 2 log10(Re √f) − 0.8.
 
     Parameters

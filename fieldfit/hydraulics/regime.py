@@ -30,12 +30,12 @@ def regime(reynolds: ArrayLike, relative_roughness: ArrayLike) -> NDArray[np.str
     reynolds : array_like
         Reynolds number [-], 0 or more.
     relative_roughness : array_like
-        Relative roughness ε/D [-], 0 or more. The two broadcast.
+        Relative roughness ε/D [-]; below 0 counts as smooth. The two broadcast.
 
     Returns
     -------
     NDArray[np.str_]
-        Kind of flow, in the broadcast shape.
+        Kind of flow, in the broadcast shape; an empty text where an input is NaN.
 
     References
     ----------
@@ -47,11 +47,12 @@ def regime(reynolds: ArrayLike, relative_roughness: ArrayLike) -> NDArray[np.str
     ['laminar' 'critical' 'smooth turbulent' 'transitional' 'fully rough']
     """
     re, rough = np.broadcast_arrays(
-        np.asarray(reynolds, dtype=np.float64), np.asarray(relative_roughness, dtype=np.float64)
+        np.asarray(reynolds, dtype=np.float64), np.maximum(np.asarray(relative_roughness, dtype=np.float64), 0.0)
     )
     f = colebrook_white(np.maximum(re, TURBULENT_LIMIT), rough)
     k_plus = rough * re * np.sqrt(f / 8.0)
     kinds = (
+        (np.isnan(k_plus), ""),
         (re < LAMINAR_LIMIT, "laminar"),
         (re < TURBULENT_LIMIT, "critical"),
         (k_plus < SMOOTH_LIMIT, "smooth turbulent"),
