@@ -181,10 +181,10 @@ def print_table(cases):
     for name, chosen in groups.items():
         some = [case for case in cases if chosen(case)]
         widths = [case.width_decades for case in some if np.isfinite(case.width_decades)]
+        scatter = [case.reduced_chi_square for case in some if np.isfinite(case.reduced_chi_square)]
         print(
             f"{name:26}{len(some):5d}{share(some, 'holds_truth'):14.1f}%{share(some, 'holds_equivalent'):14.1f}%"
-            f"{np.median(widths) if widths else float('nan'):16.3f}"
-            f"{np.nanmedian([case.reduced_chi_square for case in some]):10.2f}"
+            f"{middle(widths):16.3f}{middle(scatter):10.2f}"
         )
     print(Counter(case.state for case in cases))
     for case in cases:
@@ -194,7 +194,12 @@ def print_table(cases):
 
 def share(cases, what):
     """Percentage of cases that hold."""
-    return 100.0 * np.mean([getattr(case, what) for case in cases])
+    return 100.0 * float(np.mean([getattr(case, what) for case in cases])) if cases else float("nan")
+
+
+def middle(values):
+    """Median; NaN of nothing."""
+    return float(np.median(values)) if values else float("nan")
 
 
 def is_rough(case):
