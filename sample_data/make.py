@@ -119,14 +119,14 @@ CLAY_PIT = """\
 name = "Clay pit discharge"
 material = "carbon steel"
 installed = 1998-09-01
-bore = "102.3 mm ± 0.5 %"
+pipe = "NPS 4 schedule 40"          # its bore is known no better than the standard's wall tolerance
 temperature = "11 degC ± 1 degC"
 
 [flow]
 column = "flow"
 accuracy = "1.5 % of reading"
 meter = "CO-3"
-senses = "velocity"                # clamp-on: it was told the bore above
+senses = "velocity"                 # clamp-on: it was told the bore of that pipe
 
 [[tap]]
 column = "upstream"
@@ -212,11 +212,11 @@ def heron_lane():
 
 def clay_pit():
     """Pump discharge, somewhat rough: a hand sheet without times."""
-    pipe = Pipe(bore_m=0.1023, length_m=126.0, roughness_m=0.6e-3, elevation_m=(4.10, 9.85), temperature_degc=11)
+    pipe = Pipe(bore_m=0.10226, length_m=126.0, roughness_m=0.6e-3, elevation_m=(4.10, 9.85), temperature_degc=11)
     kit = Kit(
         gauge=Gauge(full_scale_pa=6e5, limit=0.006, step_pa=1000.0, noise_pa=800.0),
         meter=Meter(limit=0.015, step_m3_s=0.05e-3, senses="velocity", noise=0.006),
-        limits=Limits(bore=0.005, station_m=0.1, elevation_m=0.02, temperature_k=1.0),
+        limits=Limits(bore=0.0147, station_m=0.1, elevation_m=0.02, temperature_k=1.0),
     )
     plan = Plan(
         flows_m3_s=tuple(1e-3 * flow for flow in (8.0, 11.0, 14.0, 17.0, 20.0)),
