@@ -129,7 +129,7 @@ def _sand_grain(reynolds: ArrayLike, relative_roughness: ArrayLike) -> Array:
     """Return f of a pipe lined with sand grains [-].
 
     1/√f = 2 log10(Re √f/2.51) less the shift that the grains cause. Newton's step cannot miss: the slope of the left
-    side less the right lies between 0.8 and 1.3 everywhere.
+    side less the right lies between 0.9 and 1.2 everywhere.
     """
     re, rough = _floats(reynolds, relative_roughness)
     x = 1.0 / np.sqrt(colebrook_white(re, rough))
