@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
-from fieldfit.inference.friction_curve import friction_curve, highest_ln_friction
+from fieldfit.inference.friction_curve import TURBULENT_LAW_FROM, friction_curve, highest_ln_friction
 
 Array = NDArray[np.float64]
 
@@ -90,7 +90,9 @@ def solve_batch(batch: Batch, weight: Array, start: Array) -> tuple[Array, NDArr
 def _newton_step(batch: Batch, weight: Array, ln_friction: Array) -> Array:
     """Return the Newton step of each section."""
     loss_per_k = 8.0 * batch.flow_m3_s * np.abs(batch.flow_m3_s) / (np.pi**2 * STANDARD_GRAVITY * batch.bore_m**4)
-    reynolds = np.maximum(4.0 * np.abs(batch.flow_m3_s) / (np.pi * batch.bore_m * batch.viscosity_m2_s), 1.0)
+    reynolds = np.maximum(
+        4.0 * np.abs(batch.flow_m3_s) / (np.pi * batch.bore_m * batch.viscosity_m2_s), TURBULENT_LAW_FROM
+    )
     capped = np.minimum(ln_friction, highest_ln_friction(batch.reference_reynolds))
     curve = friction_curve(capped, reynolds, batch.reference_reynolds)
     scale = loss_per_k * batch.length_m / batch.bore_m * np.exp(batch.ln_friction_error)

@@ -16,6 +16,8 @@ from fieldfit.hydraulics.friction import colebrook_white, colebrook_white_with_s
 
 Array = NDArray[np.float64]
 
+TURBULENT_LAW_FROM = 100.0
+"""Reynolds number below which the turbulent law is not solved; no reading used lies there, only a wild trial step."""
 ROUGHEST = 0.5
 """Relative roughness beyond which the curve is not followed: ten times what may be called a roughness."""
 

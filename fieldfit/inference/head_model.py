@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Correlation
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY, smooth
-from fieldfit.inference.friction_curve import friction_curve
+from fieldfit.inference.friction_curve import TURBULENT_LAW_FROM, friction_curve
 from fieldfit.inference.shared_errors import SharedErrors, shared_errors
 
 Array = NDArray[np.float64]
@@ -77,7 +77,7 @@ class HeadModel:
         length = readings.length.value * np.exp(u @ errors.ln_length)
         viscosity = readings.viscosity_m2_s * np.exp(u @ errors.ln_viscosity)
         loss_per_k = 8.0 * flow * np.abs(flow) / (np.pi**2 * STANDARD_GRAVITY * bore**4)
-        reynolds = np.maximum(4.0 * np.abs(flow) / (np.pi * bore * viscosity), 1.0)
+        reynolds = np.maximum(4.0 * np.abs(flow) / (np.pi * bore * viscosity), TURBULENT_LAW_FROM)
         curve = friction_curve(np.array([ln_friction]), reynolds, np.array([self.reference.reynolds]))
         friction_m = curve.friction_factor * np.exp(u @ errors.ln_friction) * length / bore * loss_per_k
         fitting_k = readings.fitting_k.value + u @ errors.fitting_k

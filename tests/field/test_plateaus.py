@@ -169,7 +169,7 @@ def test_inertia_of_a_changing_flow_is_taken_off():
 
 
 def test_noise_of_a_mean_counts_independent_rows_only():
-    """500 logs with noise of known memory: the stated standard errors match the true spread."""
+    """120 logs with noise of known memory: the stated standard errors match the true spread."""
     rng = np.random.default_rng(5)
     velocity = np.repeat([0.0, 1.0, 2.0, 3.0], 60)
     found, stated = [], []
