@@ -1,0 +1,66 @@
+"""The audit trail: what became of every row of a log."""
+
+from __future__ import annotations
+
+import csv
+import datetime as dt
+import io
+import math
+from collections.abc import Iterable
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.field.section import Section
+from fieldfit.report.finding import CampaignFinding
+
+
+def audit_csv(campaign: CampaignFinding, section: Section) -> str:
+    """Return all rows of a log as CSV: readings in SI units, plateau, and why a row was set aside.
+
+    Parameters
+    ----------
+    campaign : CampaignFinding
+        What one log says.
+    section : Section
+        Names the columns.
+
+    Returns
+    -------
+    str
+        One heading line and one line per row; a missing value is empty, as is the reason of a row that is used.
+    """
+    log, screening = campaign.log, campaign.screening
+    timed = log.kind == "logger"
+    headings = ["line", *(["time" if log.start else "time [s]"] if timed else []), f"{section.meter.column} [m3/s]"]
+    columns: list[Iterable[str]] = [map(str, log.line.tolist())]
+    if timed:
+        columns.append(_times(log.start, log.time_s))
+    columns.append(_numbers(log.flow_m3_s))
+    for tap, pressure in zip(section.taps, log.pressure_pa, strict=True):
+        headings.append(f"{tap.column} [Pa]")
+        columns.append(_numbers(pressure))
+    if log.temperature_degc is not None:
+        headings.append("temperature [degC]")
+        columns.append(_numbers(log.temperature_degc))
+    headings += ["plateau", "set aside because"]
+    columns += [(str(n) if n else "" for n in screening.plateau.tolist()), screening.reason.tolist()]
+    out = io.StringIO()
+    writer = csv.writer(out, lineterminator="\n")
+    writer.writerow(headings)
+    writer.writerows(zip(*columns, strict=True))
+    return out.getvalue()
+
+
+def _numbers(values: NDArray[np.float64]) -> Iterable[str]:
+    return ("" if math.isnan(value) else f"{value:.9g}" for value in values.tolist())
+
+
+def _times(start: dt.datetime | None, time_s: NDArray[np.float64]) -> Iterable[str]:
+    if start is None:
+        return _numbers(time_s)
+    # A log that starts with a row without a clock has NaN there.
+    return (
+        "" if math.isnan(seconds) else (start + dt.timedelta(seconds=round(seconds, 3))).isoformat()
+        for seconds in time_s.tolist()
+    )
