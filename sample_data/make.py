@@ -16,7 +16,7 @@ sys.path.insert(0, str(HERE.parent / "tests"))
 from crew import FOOT, GPM, INCH, PLANT, PSI, STREET, WORKS, log_text, sheet_text  # noqa: E402
 from simulator import Gauge, Kit, Limits, Meter, Pipe, Plan, draw_errors, simulate  # noqa: E402
 
-SEED = 20260512
+SEED = 20260520
 CUBIC_METRE_PER_HOUR = 1.0 / 3600.0
 
 KILN_COOLING = """\
@@ -180,7 +180,7 @@ def lantern_row():
     )
     plan = Plan(
         flows_m3_s=tuple(GPM * flow for flow in (260.0, 390.0, 520.0, 630.0)),
-        dwell_s=150.0,
+        dwell_s=180.0,
         ramp_s=45.0,
         interval_s=15.0,
         supply_pa=71.0 * PSI,
@@ -249,8 +249,8 @@ def street_hand(text):
     rows = [line.split(",")[:4] for line in text.splitlines()]
     rows[0] = ["time", "Q (gpm)", "P1 (psi)", "P2 (psi)"]
     rows[17][3] = ""
-    rows[33][1] = rows[34][1] = ""
-    rows[48][0] = ""
+    rows[35][1] = ""
+    rows[55][0] = ""
     return "\n".join(";".join(row) for row in rows) + "\n"
 
 
