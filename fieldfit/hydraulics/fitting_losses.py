@@ -147,7 +147,7 @@ def fitting_k(kind: str, bore_m: float) -> FittingLoss:
     name = _BY_WORDS.get(_words(kind))
     if name is None:
         raise InputError(
-            f"the fitting '{kind}' is not known",
+            f"the fitting {kind!r:.60} is not known",
             f"{near_miss(kind, FITTING_KINDS)}Known: {'; '.join(FITTING_KINDS)}. Or give its loss coefficient as k.",
         )
     k_at, source = _KINDS[name]

@@ -124,14 +124,15 @@ def fixed_pair(
     """
     if (dynamic_pa_s is None) == (kinematic_m2_s is None):
         raise InputError(
-            f"the liquid '{name}' needs one viscosity, dynamic or kinematic", 'Give one, such as viscosity = "32 cSt".'
+            f"the liquid {name!r:.60} needs one viscosity, dynamic or kinematic",
+            'Give one, such as viscosity = "32 cSt".',
         )
     _refuse_density(name, density_kg_m3)
     kinematic = kinematic_m2_s if kinematic_m2_s is not None else (dynamic_pa_s or 0.0) / density_kg_m3
     low, high = KINEMATIC_LIMITS_M2_S
     if not low <= kinematic <= high:
         raise InputError(
-            f"the viscosity of '{name}' comes to {kinematic:.6g} m2/s, which no liquid in a pipe has",
+            f"the viscosity of {name!r:.60} comes to {kinematic:.6g} m2/s, which no liquid in a pipe has",
             "Check the value and its unit: water has 1 cSt, gear oil some hundred.",
         )
     return Liquid(
@@ -192,12 +193,12 @@ def _refuse_density(name: str, density_kg_m3: float) -> None:
     """Raise InputError for a density that no liquid has."""
     if not density_kg_m3 > 0.0 or density_kg_m3 > GREATEST_DENSITY_KG_M3:
         raise InputError(
-            f"the density of '{name}' is {density_kg_m3:.6g} kg/m3, which no liquid has",
+            f"the density of {name!r:.60} is {density_kg_m3:.6g} kg/m3, which no liquid has",
             "Check the value and its unit: water has 998 kg/m3.",
         )
     if density_kg_m3 < LEAST_DENSITY_KG_M3:
         raise InputError(
-            f"the density of '{name}' is {density_kg_m3:.6g} kg/m3: that is a gas",
+            f"the density of {name!r:.60} is {density_kg_m3:.6g} kg/m3: that is a gas",
             "Only liquids can be assessed: water has 998 kg/m3, petrol about 740.",
         )
 

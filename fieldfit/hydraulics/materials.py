@@ -66,10 +66,10 @@ def material(name: str) -> Material:
         return _BY_NAME[folded]
     if folded in _TOO_GENERAL:
         choices = ", ".join(f"'{choice}'" for choice in _TOO_GENERAL[folded])
-        raise InputError(f"the material '{name}' means several kinds of pipe", f"Say which: {choices}.")
+        raise InputError(f"the material {name!r:.60} means several kinds of pipe", f"Say which: {choices}.")
     every = [option for row in MATERIALS for option in (row.name, *row.aliases)] + list(_TOO_GENERAL)
     raise InputError(
-        f"the material '{name}' is not in the new-pipe table",
+        f"the material {name!r:.60} is not in the new-pipe table",
         f"{near_miss(name, every)}Known: {', '.join(row.name for row in MATERIALS)}."
         " Leave it out if it is none of these: there is then no comparison with new pipe.",
     )

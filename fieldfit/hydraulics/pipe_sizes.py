@@ -104,7 +104,7 @@ def pipe_size(text: str) -> PipeSize:
     odd = [meaning for meaning in words.said if meaning not in family.words | family.marks | {"standard"}]
     if odd:
         raise InputError(
-            f"the pipe size '{text}' mixes {family.name} with {_SPOKEN.get(odd[0], odd[0])}",
+            f"the pipe size {text!r:.60} mixes {family.name} with {_SPOKEN.get(odd[0], odd[0])}",
             "Say one or the other: no pipe is both.",
         )
     return family.look_up(words)
@@ -123,7 +123,7 @@ def _understood(text: str) -> _Words:
         raise _not_understood(text)
     if strange:
         raise InputError(
-            f"the pipe size '{text}' says '{' '.join(strange)}', which is not understood",
+            f"the pipe size {text!r:.60} says {' '.join(strange)!r:.60}, which is not understood",
             f"{near_miss(strange[0], _KEY_WORDS)}Write it such as {_quoted(EXAMPLES)}; or give the bore itself.",
         )
     return words
@@ -142,7 +142,7 @@ def _plain(text: str) -> str:
 def _not_understood(text: str) -> InputError:
     """Return the error for a text of no known form."""
     return InputError(
-        f"the pipe size '{text}' is not understood",
+        f"the pipe size {text!r:.60} is not understood",
         f"{near_miss(text, EXAMPLES)}Write it such as {_quoted(EXAMPLES)}; or give the bore itself.",
     )
 
@@ -155,7 +155,7 @@ def _quoted(examples: tuple[str, ...]) -> str:
 def _asked(words: _Words, meaning: str, choices: str) -> str:
     """Return a word that this kind of pipe cannot do without."""
     if meaning not in words.said:
-        raise InputError(f"the pipe size '{words.text}' does not say {choices}", f"Add {choices}.")
+        raise InputError(f"the pipe size {words.text!r:.60} does not say {choices}", f"Add {choices}.")
     return words.said[meaning]
 
 
@@ -179,7 +179,7 @@ def _nps(words: _Words) -> float:
         return _inch(words)
     dn = _dn(words)
     if "inch" in words.said and metal_pipe.NPS_BY_DN.get(dn) != _inch(words):
-        raise InputError(f"the pipe size '{words.text}' gives two sizes that differ", "Give one, DN or NPS.")
+        raise InputError(f"the pipe size {words.text!r:.60} gives two sizes that differ", "Give one, DN or NPS.")
     if dn not in metal_pipe.NPS_BY_DN:
         nearest = sorted(sorted(metal_pipe.NPS_BY_DN, key=lambda known: abs(known - dn))[:3])
         raise InputError(

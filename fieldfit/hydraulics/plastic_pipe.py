@@ -11,8 +11,8 @@ _OUTSIDE_MM = (
     *(20, 25, 32, 40, 50, 63, 75, 90, 110, 125, 140, 160),
     *(180, 200, 225, 250, 280, 315, 355, 400, 450, 500, 560, 630),
 )
-# Least wall of each outside diameter, ISO 4065 as used by ISO 4427-2 and ISO 1452-2. Read in tables after ISO 4427-2
-# up to 560 mm, SDR 26 up to 630 mm; recalled: SDR 21 from 450 mm and the other walls of 630 mm.
+# Least wall of each outside diameter by ISO 4065, as used by ISO 4427-2 and ISO 1452-2. Read in tables after ISO 4427-2
+# up to 560 mm; recalled from there on and for SDR 21 from 450 mm. All follow the standard's rule, which a test repeats.
 _WALLS_MM = {
     7.4: "3.0 3.5 4.4 5.5 6.9 8.6 10.3 12.3 15.1 17.1 19.2 21.9 24.6 27.4 30.8 34.2 38.3 43.1 48.5 54.7 61.5 - - -",
     9.0: "2.3 3.0 3.6 4.5 5.6 7.1 8.4 10.1 12.3 14.0 15.7 17.9 20.1 22.4 25.2 27.9 31.3 35.2 39.7 44.7 50.3 55.8 - -",
@@ -37,6 +37,10 @@ PE_SDR_BY_PRESSURE = {
 }
 """SDR of each nominal pressure [bar], ISO 4427-2 with design coefficient 1.25."""
 
+PVC_SDR = (13.6, 17.0, 21.0, 26.0)
+"""Ratios of PVC-U pressure pipe that are looked up."""
+PVC_LEAST_OUTSIDE_MM = 63
+"""Smallest PVC-U pipe looked up [mm]: below it PVC-U may be thinner than PE, whose wall is never under 2 mm."""
 PVC_INCH_WALL_RANGE = 0.12
 PVC_INCH_LEAST_RANGE_MM = 0.51
 """American PVC: the wall may exceed its least value by 12 % or 0.020 in (recalled)."""
@@ -90,7 +94,7 @@ def pvc_metric(outside_mm: int, sdr: float) -> PipeSize:
     ----------
     ISO 1452-2:2009; ISO 11922-1, grades C and W (W recalled).
     """
-    wall = _least_wall(outside_mm, sdr, "PVC-U")
+    wall = _least_wall(outside_mm, sdr, "PVC-U", PVC_LEAST_OUTSIDE_MM, PVC_SDR)
     outside_range = max(_up(0.003 * outside_mm), 0.3)
     name = f"DN {outside_mm} PVC-U SDR {sdr:g}"
     source = "ISO 1452-2: outside diameter grade C, wall grade W (recalled)"
@@ -158,17 +162,19 @@ def _between_extremes(
     return toleranced(name, middle, (outside[1] / 2.0 + wall[1],), source, material)
 
 
-def _least_wall(outside_mm: int, sdr: float, kind: str) -> float:
-    """Return the least wall [mm] of a metric plastic pipe."""
-    wall = LEAST_WALL_MM.get((outside_mm, sdr))
-    if wall is not None:
-        return wall
-    ratios = [f"{ratio:g}" for ratio in _WALLS_MM if (outside_mm, ratio) in LEAST_WALL_MM]
+def _least_wall(
+    outside_mm: int, sdr: float, kind: str, least_outside_mm: int = 0, made: tuple[float, ...] = tuple(_WALLS_MM)
+) -> float:
+    """Return the least wall [mm] of a metric plastic pipe, of the sizes and ratios its standard has."""
+    sizes = [size for size in _OUTSIDE_MM if size >= least_outside_mm]
+    ratios = [ratio for ratio in made if outside_mm in sizes and (outside_mm, ratio) in LEAST_WALL_MM]
+    if sdr in ratios:
+        return LEAST_WALL_MM[outside_mm, sdr]
     raise InputError(
         f"no {kind} pipe DN {outside_mm} SDR {sdr:g}",
-        f"DN {outside_mm} is made in SDR {', '.join(ratios)}."
+        f"DN {outside_mm} is made in SDR {', '.join(f'{ratio:g}' for ratio in ratios)}."
         if ratios
-        else f"DN of plastic pipe is its outside diameter: {', '.join(map(str, _OUTSIDE_MM))}.",
+        else f"DN of plastic pipe is its outside diameter: {', '.join(map(str, sizes))}.",
     )
 
 

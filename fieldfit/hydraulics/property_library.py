@@ -44,7 +44,7 @@ def load(name: str) -> Any:
         from CoolProp import CoolProp
     except ImportError:
         raise InputError(
-            f"the properties of '{name}' come from the CoolProp library, which is not installed",
+            f"the properties of {name!r:.60} come from the CoolProp library, which is not installed",
             f'Run: pip install "fieldfit[liquids]". Or g{GIVE_A_PAIR[1:]}',
         ) from None
     return CoolProp
@@ -86,7 +86,7 @@ def liquid_range_k(name: str, code: str, library: Any) -> tuple[float, float]:
     except ValueError as error:
         complaint = str(error).split(" : PropsSI")[0].rstrip(". ")
         raise InputError(
-            f"the property library cannot give '{name}' as a liquid at atmospheric pressure ({complaint})",
+            f"the property library cannot give {name!r:.60} as a liquid at atmospheric pressure ({complaint})",
             GIVE_A_PAIR,
         ) from None
     return low, boils
@@ -133,7 +133,7 @@ def _solution_code(name: str) -> str | None:
     solute = " ".join(match[1].casefold().split())
     if solute not in SOLUTIONS:
         raise InputError(
-            f"the solution '{name}' is not known",
+            f"the solution {name!r:.60} is not known",
             f"{near_miss(solute, SOLUTIONS)}Known, with their percentage by mass: {', '.join(SOLUTIONS)}.",
         )
     return f"INCOMP::{SOLUTIONS[solute]}[{float(match[2]) / 100.0:.6g}]"
@@ -145,15 +145,16 @@ def _pure_code(name: str, library: Any) -> str:
     for fluid in library.get_global_param_string("FluidsList").split(","):
         for alias in (fluid, *library.get_fluid_param_string(fluid, "aliases").split(",")):
             known.setdefault(alias.strip().casefold(), fluid)
+    known.pop("", None)  # a fluid without an alias lists an empty one
     wanted = name.strip().casefold()
     if wanted in SOLUTIONS:
         raise InputError(
-            f"'{name}' has no percentage", f'Give the percentage by mass in water, such as "{wanted} 30 %".'
+            f"{name!r:.60} has no percentage", f'Give the percentage by mass in water, such as "{wanted} 30 %".'
         )
     code = known.get(wanted)
     if code is None:
         raise InputError(
-            f"the property library knows no fluid '{name}'",
+            f"the property library knows no fluid {name!r:.60}",
             f"{near_miss(name, sorted(set(known.values()) | set(SOLUTIONS)))}"
             f'Name a pure liquid ("toluene") or a solution by mass ("propylene glycol 30 %"). {GIVE_A_PAIR}',
         )
