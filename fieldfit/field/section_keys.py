@@ -6,6 +6,9 @@ from dataclasses import dataclass
 
 from fieldfit.field.screens import LIMITS
 
+PLACEHOLDER = "FILL IN"
+"""What a blank section file has in place of a value."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Key:

@@ -194,14 +194,10 @@ def read_fittings(tables: tuple[TomlTable, ...], bore_m: float, said: list[str])
         When both or neither of k and kind are given, or one cannot be read.
     """
     fittings = tuple(_fitting(table, bore_m) for table in tables)
-    bare = [
-        fitting.name
-        for table, fitting in zip(tables, fittings, strict=True)
-        if fitting.k.assumed and "k" in table.values
-    ]
+    bare = dict.fromkeys(fitting.name for fitting in fittings if fitting.k.assumed)
     if bare:
         example = 'write k = "0.5 ± 20 %" to change it.'
-        said.append(f"K of {', '.join(dict.fromkeys(bare))} was taken as good to ±{FITTING_LIMIT}: {example}")
+        said.append(f"K of {', '.join(bare)} was taken as good to ±{FITTING_LIMIT}: {example}")
     return fittings
 
 
@@ -228,8 +224,8 @@ def _coefficient(table: TomlTable, k_text: str | None, kind: str | None, bore_m:
     if kind is not None:
         with table.at("kind"):
             loss = fitting_k(kind, bore_m)
-        standard = loss.k * loss.relative_standard
-        return Uncertain(value=loss.k, standard=standard, shape="normal", assumed=True), loss.source
+        k = Uncertain(value=loss.k, standard=loss.k * loss.relative_standard, assumed=True)
+        return k, loss.source
     with table.at("k"):
         k = uncertain(k_text or "", "ratio", "0.5", FITTING_LIMIT)
         if k.value < 0.0 or k.value > 1e5:

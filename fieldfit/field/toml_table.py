@@ -12,7 +12,7 @@ from pathlib import Path
 from typing import NoReturn
 
 from fieldfit.errors import InputError, near_miss
-from fieldfit.field.section_keys import LISTS, TABLES, Key, keys_of
+from fieldfit.field.section_keys import LISTS, PLACEHOLDER, TABLES, Key, keys_of
 from fieldfit.field.units import shown
 
 LARGEST_FILE_BYTES = 1_000_000
@@ -87,6 +87,8 @@ class TomlTable:
         if not isinstance(value, str):
             seen = f"{_called(value)} stands where text is wanted"
             raise InputError(seen, f"Write {self._entry(key).line}, in quotation marks.").at(self.where(key))
+        if value == PLACEHOLDER:
+            raise InputError(f"'{key}' is still to be filled in", f"Write {self._entry(key).line}.").at(self.where(key))
         text = " ".join("".join(sign if sign.isprintable() else " " for sign in value).split())
         if not text or len(text) > longest:
             seen = "the text is empty" if not text else f"'{shown(text)}' has {len(text)} characters"

@@ -1,0 +1,88 @@
+"""A section file to fill in."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from pathlib import Path
+
+from fieldfit.errors import InputError
+from fieldfit.field.section_file import FILE_NAME
+from fieldfit.field.section_keys import LISTS, PLACEHOLDER, TABLES, keys_of
+from fieldfit.field.units import shown
+
+_INTRODUCTION = f"""\
+# What is known of the test section before anyone looks at readings.
+# Replace every "{PLACEHOLDER}". Lines that begin with # are optional: take the # away to use them.
+# A value with a dimension is text with its unit: "412 m", "8 in", "150 psi". Behind it may stand how far it
+# may be off: "52.5 mm ± 0.2 mm" is a limit; "(k=2)" or "(95 %)" behind that says what else it is.
+"""
+
+_ABOUT = {
+    "flow": "The flow meter.",
+    "tap": "A pressure tap and its gauge: one such table each, in the order of the flow.",
+    "fitting": "A bend, valve or tee between the taps: one such table for each kind.",
+    "campaign": "A day of testing and its log: one such table each. Not needed when the log is named in the command.",
+    "duty": "What the pipe must carry.",
+    "correlation": "How far friction correlations are trusted; the trade's ±10 % when it is left out.",
+    "screen": "Limits that decide which rows count; shown with the values that hold when they are left out.",
+}
+
+
+def write_blank_section(folder: str | Path) -> Path:
+    """Write a section file with every key explained, to be filled in.
+
+    Parameters
+    ----------
+    folder : str or Path
+        Folder of the test section; made when it is not there.
+
+    Returns
+    -------
+    Path
+        The file.
+
+    Raises
+    ------
+    InputError
+        When there is such a file already, or it cannot be written.
+    """
+    file = Path(folder) / FILE_NAME
+    try:
+        file.parent.mkdir(parents=True, exist_ok=True)
+        with file.open("x", encoding="utf-8", newline="\n") as text:
+            text.write(blank_section())
+    except FileExistsError:
+        seen = "there is one already" if file.exists() else "a file of this name stands where the folder should be"
+        raise InputError(seen, "Name another folder; nothing was overwritten.", str(file)) from None
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        raise InputError(f"it cannot be written: {shown(reason)}", "Name another folder.", str(file)) from None
+    return file
+
+
+def blank_section() -> str:
+    """Return the text of a blank section file.
+
+    Examples
+    --------
+    >>> print(blank_section().splitlines()[5])
+    name = "FILL IN"  # printed name; file names are made from it, such as "Kiln cooling supply"
+    """
+    parts = [_INTRODUCTION, *_keys("")]
+    for table in ("flow", "tap", "tap", *LISTS[1:], *TABLES[1:]):
+        needed = table in {"flow", "tap"}
+        header = f"[[{table}]]" if table in LISTS else f"[{table}]"
+        parts += ["", f"# {_ABOUT[table]}", header if needed else f"# {header}", *_keys(table, needed)]
+    first, second, rest = "\n".join(parts).split("[[tap]]", 2)
+    return f"{first}[[tap]]{second}[[tap]]{rest.replace('upstream', 'downstream', 1)}\n"
+
+
+def _keys(table: str, needed: bool = True) -> Iterator[str]:
+    """Yield a line for each key of a table."""
+    for key in keys_of(table).values():
+        if key.required and needed:
+            yield f'{key.name} = "{PLACEHOLDER}"  # {key.meaning}, such as {key.example}'
+        else:
+            yield f"# {key.line}  # {key.meaning}"
+        if key.name == "fluid":
+            yield f"# fluid = {{ {', '.join(entry.line for entry in keys_of('fluid').values())} }}"
