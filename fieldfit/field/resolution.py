@@ -11,6 +11,10 @@ SAMPLE = 5000
 """Values looked at."""
 ENOUGH = 6
 """Distinct values from which a common divisor of their differences is no accident."""
+SMALLEST_PART = 6
+"""Parts of the smallest gap that are tried as a step."""
+CLOSE = 1e-4
+"""Distance from a whole number of steps that conversion may leave [steps]."""
 _MOST_DECIMALS = 9
 
 
@@ -64,21 +68,19 @@ def _decimals(values: Array) -> int | None:
 
 
 def _common_step(values: Array) -> float:
-    """Return the common divisor of the differences of sorted values, by Euclid with a tolerance; 0 for none."""
-    tolerance = 64.0 * float(np.spacing(np.max(np.abs(values))))
-    step = 0.0
-    for gap in np.sort(np.diff(values)).tolist():
-        step = _divisor(gap, step, tolerance)
-        if step < 1e3 * tolerance:
-            return 0.0
-    # Each larger distance holds more steps, so it gives the step more closely.
-    for distance in (values - values[0])[1:].tolist():
-        step = distance / max(round(distance / step), 1)
-    return float(step)
+    """Return the step that sorted values are all multiples of, from the first one on; 0 for none.
 
-
-def _divisor(larger: float, smaller: float, tolerance: float) -> float:
-    """Return the greatest common divisor of two lengths; what is left under the tolerance counts as nothing."""
-    while smaller > tolerance:
-        larger, smaller = smaller, abs(larger - smaller * round(larger / smaller))
-    return larger
+    It is the smallest gap or a small part of it: conversion leaves each value right to its last few digits only,
+    so a divisor is tried against all values instead of being worked out by Euclid, which multiplies such errors.
+    """
+    gaps = np.diff(values)
+    real = gaps[gaps > 64.0 * float(np.spacing(np.max(np.abs(values))))]
+    if real.size == 0:
+        return 0.0
+    from_first = values - values[0]
+    for parts in range(1, SMALLEST_PART + 1):
+        step = float(np.min(real)) / parts
+        steps = np.rint(from_first / step)
+        if np.all(np.abs(from_first / step - steps) < CLOSE):
+            return float(from_first[-1] / steps[-1])
+    return 0.0
