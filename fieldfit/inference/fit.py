@@ -16,6 +16,11 @@ Array = NDArray[np.float64]
 
 NORMAL_95 = 1.959963984540054
 """Two-sided 95 % point of the normal distribution."""
+ALL_SCATTER = 1e4
+"""Factor on the noise under which the shared errors stay where their priors put them."""
+WIDENINGS = 30
+ENOUGH = 0.98
+"""Reduced χ² at which widened noise is content."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -33,7 +38,7 @@ class Fit:
     chi_square: float
     """Misfit at the best point: readings and shared errors together [-]."""
     reduced_chi_square: float | None
-    """χ² over degrees of freedom before any widening [-]; None with a single reading."""
+    """χ² over degrees of freedom, or the factor the noise's variance was widened by [-]; None with one reading."""
     interval: tuple[float, float]
     """95 % profile-likelihood interval of ln f at the reference [-]."""
     share: Array
@@ -58,15 +63,9 @@ def fit_reach(model: HeadModel) -> Fit:
     -------
     Fit
     """
-    noise = model.readings.random_m
+    noise, reduced = _fitting_noise(model)
     ln_friction, u = _least_squares(model, noise)
     chi_square = _chi_square(model, noise, ln_friction, u)
-    freedom = len(noise) - 1
-    reduced = chi_square / freedom if freedom else None
-    if reduced is not None and reduced > 1.0:
-        noise = noise * np.sqrt(reduced)
-        ln_friction, u = _least_squares(model, noise)
-        chi_square = _chi_square(model, noise, ln_friction, u)
     share, standard = _linearised(model, noise, ln_friction, u)
     return Fit(
         model=model,
@@ -79,6 +78,29 @@ def fit_reach(model: HeadModel) -> Fit:
         share=share,
         standard=standard,
     )
+
+
+def _fitting_noise(model: HeadModel) -> tuple[Array, float | None]:
+    """Return the random standard errors, widened until the fit is content, and the reduced χ².
+
+    The widening comes down from above, from a fit that leaves all scatter to the noise: coming up from noise that
+    is far too small, the shared errors would be bent to swallow the scatter and stay bent.
+    """
+    noise = model.readings.random_m
+    freedom = len(noise) - 1
+    if freedom == 0:
+        return noise, None
+    reduced = _chi_square(model, noise, *_least_squares(model, noise)) / freedom
+    if reduced <= 1.0:
+        return noise, reduced
+    ln_friction, u = _least_squares(model, ALL_SCATTER * noise)
+    scale = np.sqrt(_chi_square(model, noise, ln_friction, 0.0 * u) / freedom)
+    for _ in range(WIDENINGS):
+        at_scale = _chi_square(model, scale * noise, *_least_squares(model, scale * noise)) / freedom
+        if at_scale > ENOUGH or scale <= 1.0:
+            break
+        scale = max(scale * np.sqrt(at_scale), 1.0)
+    return scale * noise, float(scale**2)
 
 
 def _least_squares(model: HeadModel, noise: Array) -> tuple[float, Array]:
