@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 from fieldfit.errors import InputError
 from fieldfit.field.instrument_classes import named_class
 from fieldfit.field.quantities import Spread, part_spread, quantity
-from fieldfit.field.spans import OF_SPAN, span
+from fieldfit.field.spans import span
 from fieldfit.field.uncertain import Accuracy
 from fieldfit.field.unit_spellings import Dimension
 from fieldfit.field.units import shown
@@ -122,8 +122,9 @@ def _part(text: str, dimension: Dimension) -> _Part:
     if text.endswith("%") or re.fullmatch(r".*%\s*(?:of)?", text):
         choice = f'Write "{shown(text)} of reading" or "{shown(text)} of {_RANGE[dimension]}".'
         raise InputError(f"'{shown(text)}' may be of reading or of full scale", choice)
-    if OF_SPAN.search(text):
-        raise InputError(f"'{shown(text)}' does not say a share", _advice(dimension))
+    if re.fullmatch(r"[+-]?[0-9.]*", text):
+        seen = f"'{shown(text)}' has neither a unit nor a percent sign" if text else "no accuracy is written"
+        raise InputError(seen, _advice(dimension))
     return _Part(fixed=_not_negative(quantity(text, dimension, _AMOUNT[dimension]), text, dimension))
 
 

@@ -176,7 +176,9 @@ def _not_found(
         guesses = [fields(line, separator) for line in lines for separator in SEPARATORS]
         texts = next((guess for guess in guesses if len(guess) > 2), ())
     missing = next((column.column for column in wanted if not _places(texts, column)), wanted[0].column)
-    names = [*texts, *(name for text in texts for name, _, _ in _partings(text))]
+    taken = {place for column in wanted for place, _ in _places(texts, column)}
+    free = [text for place, text in enumerate(texts) if place not in taken]
+    names = [*free, *(name for text in free for name, _, _ in _partings(text))]
     listed = ", ".join(f"'{shown(text)}'" for text in texts[:12]) or "none"
     advice = f"{near_miss(missing, names)}Headings here: {listed}. Name the one to use as column in the section file."
     return InputError(f"no heading '{shown(missing)}'", advice, f"{file}:{number}" if number else file)

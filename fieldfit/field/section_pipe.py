@@ -144,6 +144,7 @@ def _pair(top: TomlTable) -> Liquid:
     with table.at("viscosity"):
         dynamic = measures(viscosity_text, "dynamic viscosity")
         viscosity = uncertain(viscosity_text, "dynamic viscosity" if dynamic else "kinematic viscosity", "32 cSt", "0")
+    with top.at("fluid"):
         if dynamic:
             liquid = fixed_pair(name, density, dynamic_pa_s=viscosity.value)
         else:

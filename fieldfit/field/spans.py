@@ -10,8 +10,7 @@ from fieldfit.field.quantities import quantity
 from fieldfit.field.unit_spellings import Dimension
 from fieldfit.field.units import shown
 
-OF_SPAN = re.compile(r"\b(?:full[\s-]?scale|f\.?s\.?o?|span|range|u\.?r\.?l\.?|max(?:imum)?)(?=\W|$)", re.IGNORECASE)
-"""Words for an instrument's whole range."""
+_WORDS = re.compile(r"\b(?:full[\s-]?scale|f\.?s\.?o?|span|range|u\.?r\.?l\.?|max(?:imum)?)(?=\W|$)", re.IGNORECASE)
 
 _NUMBER = r"[+-]?[0-9]*\.?[0-9]+"
 _FROM_TO = re.compile(rf"({_NUMBER})\s*([^\d\s.+-].*?)?\s*(?:-|to|\.\.\.?|…|/)\s*({_NUMBER})\s*(.+)")
@@ -51,7 +50,7 @@ def span(text: str, dimension: Dimension, example: str) -> Span:
     >>> span("full scale (50 L/s)", "flow", "50 L/s")
     Span(low=0.0, width=0.05)
     """
-    bare = OF_SPAN.sub("", text.strip()).strip(" ,;:=")
+    bare = _WORDS.sub("", text.strip()).strip(" ,;:=")
     bare = re.sub(r"^(?:of|is)\b\s*", "", bare, flags=re.IGNORECASE)
     bare = bare[1:-1] if bare.startswith("(") and bare.endswith(")") else bare
     if not bare:

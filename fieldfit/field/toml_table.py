@@ -73,7 +73,8 @@ class TomlTable:
 
     def missing(self, key: str) -> NoReturn:
         """Refuse the table for want of a key."""
-        raise InputError(f"'{key}' is missing", f"Write {self._entry(key).line}.").at(self.where(key))
+        choice = f" or {self._entry('pipe').line}" if key == "bore" else ""
+        raise InputError(f"'{key}' is missing", f"Write {self._entry(key).line}{choice}.").at(self.where(key))
 
     def _entry(self, key: str) -> Key:
         """Return what the list says of a key."""
@@ -85,8 +86,10 @@ class TomlTable:
         if value is None:
             return None
         if not isinstance(value, str):
-            seen = f"{_called(value)} stands where text is wanted"
-            raise InputError(seen, f"Write {self._entry(key).line}, in quotation marks.").at(self.where(key))
+            entry = self._entry(key)
+            bare = isinstance(value, int | float) and re.match(r'"[0-9]', entry.example)
+            seen = f"{_called(value)} {'has no unit' if bare else 'stands where text is wanted'}"
+            raise InputError(seen, f"Write {entry.line}, in quotation marks.").at(self.where(key))
         if value == PLACEHOLDER:
             raise InputError(f"'{key}' is still to be filled in", f"Write {self._entry(key).line}.").at(self.where(key))
         text = " ".join("".join(sign if sign.isprintable() else " " for sign in value).split())
@@ -108,7 +111,10 @@ class TomlTable:
         value = self.values.get(key)
         if isinstance(value, bool) or not isinstance(value, int | float):
             return self.text(key)
-        return repr(value) if isinstance(value, float) or value.bit_length() < 100 else "a number of many digits"
+        if isinstance(value, int) and value.bit_length() > 100:
+            advice = f"Write {self._entry(key).line}."
+            raise InputError("the number has too many digits", advice).at(self.where(key))
+        return repr(value)
 
     def date(self, key: str) -> dt.date | None:
         """Return a date, or None where the key is absent."""
@@ -212,10 +218,12 @@ def _no_toml(reason: str, text: str, file: str) -> InputError:
     lines = text.split("\n")
     number = int(found[1]) if found else len(lines)
     line = lines[number - 1] if number <= len(lines) else ""
-    once = "overwrite" in reason or "twice" in reason or "already" in reason
-    advice = (
-        "Each key and each [table] may stand once." if once else 'Text stands in quotation marks: bore = "52.5 mm".'
-    )
+    if "date" in reason:
+        advice = "Write a day that there is, as year, month and day: 2009-03-01."
+    elif "overwrite" in reason or "twice" in reason or "already" in reason:
+        advice = "Each key and each [table] may stand once."
+    else:
+        advice = 'Text stands in quotation marks: bore = "52.5 mm".'
     return InputError(f"'{shown(line)}' is not TOML ({shown(reason)})", advice, f"{file}:{number}")
 
 
