@@ -14,7 +14,8 @@ HERE = Path(__file__).resolve().parent
 sys.path.insert(0, str(HERE.parent / "tests"))
 
 from crew import FOOT, GPM, INCH, PLANT, PSI, STREET, WORKS, log_text, sheet_text  # noqa: E402
-from simulator import Gauge, Kit, Limits, Meter, Pipe, Plan, draw_errors, simulate  # noqa: E402
+from instruments import Gauge, Kit, Limits, Meter, Pipe, Plan  # noqa: E402
+from simulator import draw_errors, simulate  # noqa: E402
 
 SEED = 20260520
 CUBIC_METRE_PER_HOUR = 1.0 / 3600.0

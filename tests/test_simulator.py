@@ -3,7 +3,8 @@
 import numpy as np
 import pytest
 from crew import PLANT, PSI, STREET, bring, rounded, sheet_text
-from simulator import Errors, Gauge, Kit, Meter, Pipe, Plan, draw_line, friction_factor, simulate, true_head_loss
+from instruments import Gauge, Kit, Meter, Pipe, Plan
+from simulator import Errors, draw_line, friction_factor, simulate, true_head_loss
 
 KIT = Kit(
     gauge=Gauge(full_scale_pa=1e6, limit=0.0025, step_pa=100.0, noise_pa=300.0),

@@ -31,14 +31,19 @@ column = "p2"
 station = "{length} ± 0"
 elevation = "0 m ± 0"
 accuracy = "0"
+
+[screen]
+static_flow = 0.001
 """
 
 
 def wall_of(folder, heading, rows, **known):
-    """Write the section file and a hand sheet, assess them, and return the only wall."""
+    """Write the section file and a hand sheet of flow and pressure drop, assess them, and return the only wall."""
     section, sheet = folder / "section.toml", folder / "sheet.csv"
     section.write_text(SMOOTH_PIPE.format(**known), encoding="utf-8")
-    lines = [heading, *(",".join(f"{value:.6g}" for value in row) for row in rows)]
+    # The second gauge stands at a ten-thousandth, so that its column shows how finely it was read.
+    rows = [(flow, drop + 1e-4, 1e-4) for flow, drop in rows]
+    lines = [heading, *(",".join(f"{value:.7f}" for value in row) for row in rows)]
     sheet.write_text("\n".join(lines) + "\n", encoding="utf-8")
     return assess(section, sheet).campaigns[0].reaches[0].wall
 
@@ -57,7 +62,7 @@ def test_oregon_smooth_pipe_ends_as_upper_limit(tmp_path):
     wall = wall_of(
         tmp_path,
         "flow [L/s],p1 [kPa],p2 [kPa]",
-        np.column_stack([1e3 * flow, 1e-3 * pressure, np.zeros_like(flow)]),
+        np.column_stack([1e3 * flow, 1e-3 * pressure]),
         bore="100 mm ± 0.1 %",
         temperature="20 degC ± 0.1 degC",
         meter="0.5 % of reading",
@@ -96,7 +101,7 @@ def test_munson_readings_are_smooth(tmp_path):
     wall = wall_of(
         tmp_path,
         "flow [gpm],p1 [psi],p2 [psi]",
-        np.column_stack([gpm, drop_psi, np.zeros_like(gpm)]),
+        np.column_stack([gpm, drop_psi]),
         bore="0.496 in ± 0.2 %",
         temperature="60 degF ± 1 degF",
         meter="1 % of reading",
@@ -105,11 +110,11 @@ def test_munson_readings_are_smooth(tmp_path):
     )
     assert wall.state == "upper limit"
     values = wall.plateaus
-    # The READ groups, within what their printed digits and the recalled readings allow.
-    published = np.interp(np.log(values.reynolds), np.log(MUNSON_REYNOLDS), MUNSON_FRICTION)
-    assert len(values.reynolds) >= 7
-    assert values.reynolds == pytest.approx(MUNSON_REYNOLDS[-len(values.reynolds) :], rel=0.02)
-    assert values.friction_factor == pytest.approx(published, rel=0.03)
+    # All but perhaps the first, at the edge of the critical zone; within what printed digits and memory allow.
+    used = len(values.reynolds)
+    assert used >= 7
+    assert values.reynolds == pytest.approx(MUNSON_REYNOLDS[-used:], rel=0.02)
+    assert values.friction_factor == pytest.approx(MUNSON_FRICTION[-used:], rel=0.03)
     assert wall.roughness_m.with_correlation[1] < 2e-3 * bore
     assert drop_psi[-1] * PSI == pytest.approx(1730.0 * 47.880259, rel=1e-6)
 
@@ -120,7 +125,7 @@ def test_drawn_tube_from_one_reading_is_an_upper_limit_with_a_huge_band(tmp_path
     wall = wall_of(
         tmp_path,
         "flow [ft3/s],p1 [psi],p2 [psi]",
-        [(0.2, 11.80, 0.0)],
+        [(0.2, 11.80)],
         bore="2.000 in ± 0.2 %",
         temperature="60 degF ± 1 degF",
         meter="0.5 % of reading",

@@ -9,7 +9,8 @@ import numpy as np
 import pytest
 from crew import GPM, INCH, PSI, Units, rounded
 from fluids.friction import Colebrook
-from simulator import GRAVITY, Gauge, Kit, Meter, Pipe, Plan, simulate, water
+from instruments import Gauge, Kit, Meter, Pipe, Plan
+from simulator import GRAVITY, simulate, water
 
 from fieldfit.assessment import assess
 from fieldfit.report.record import record

@@ -12,7 +12,8 @@ from dataclasses import dataclass
 import numpy as np
 import pytest
 from crew import PLANT, STREET, WORKS, bring
-from simulator import GRAVITY, Gauge, Kit, Limits, Meter, Pipe, Plan, friction_factor, simulate, water
+from instruments import Gauge, Kit, Limits, Meter, Pipe, Plan
+from simulator import GRAVITY, friction_factor, simulate, water
 
 pytestmark = pytest.mark.slow
 
@@ -138,7 +139,7 @@ def judge(rng, folder):
     day = simulate(rng, pipe, kit, plan)
     units = (PLANT, WORKS, STREET)[rng.integers(3)]
     section, log = bring(day, folder, units, spoil=rng if rng.random() < 0.5 else None)
-    wall = assess(section, [log]).campaigns[0].reaches[0].wall
+    wall = assess(section, log).campaigns[0].reaches[0].wall
     band = wall.roughness_m.with_correlation
     f = day.truth.friction_factor[-1]
     # Fully rough: u*ε/ν of 70 and more at the largest flow (Nikuradse 1933).
