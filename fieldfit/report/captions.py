@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from fieldfit.report.cautions import SCATTER
 from fieldfit.report.digits import litres, percent, significant, value_with_band
 from fieldfit.report.finding import CampaignFinding, ReachFinding
 
@@ -13,10 +14,10 @@ def head_loss(reach: ReachFinding) -> str:
     wall, new = reach.wall, reach.new_pipe
     if wall.state == "no estimate":
         return "No line is fitted: these readings carry no roughness."
-    if wall.reduced_chi_square is not None and wall.reduced_chi_square > 2.0:
+    if wall.reduced_chi_square is not None and wall.reduced_chi_square > SCATTER:
         follow = "The readings stray from one line more than their own scatter allows"
     elif wall.state == "upper limit":
-        follow = "The readings run along the smooth line, closer than the formulas can be trusted"
+        follow = "The readings run along the smooth line, closer to it than friction formulas can be trusted"
     else:
         follow = "One roughness explains all readings"
     if new is None:
@@ -25,8 +26,8 @@ def head_loss(reach: ReachFinding) -> str:
     times = f"{value_with_band(best, (low, high)).split(' (')[0]} times what new pipe would lose at {litres(wall.flow_m3_s)}"
     if low > new.limit:
         return f"{follow}, and they lie clear above new pipe: {times}."
-    where = "below" if high < 1.0 else "not clearly above"
-    return f"{follow}; they lie {where} new pipe: {times}."
+    where = "lie below" if high < 1.0 else "do not stand clear of"
+    return f"{follow}; they {where} new pipe: {times}."
 
 
 def friction_chart(reach: ReachFinding) -> str:

@@ -13,19 +13,19 @@ COVERAGE = 1.96
 def decimals(half_width: float) -> int:
     """Return how many decimals a value deserves when its 95 % half-width is known.
 
-    The half-width is kept to two digits when it starts with a one, else to one digit.
+    Rounding then moves a value by no more than a fifth of its half-width.
     Negative means tens, hundreds and so on.
 
     Examples
     --------
     >>> decimals(0.07), decimals(0.13), decimals(2.3), decimals(230.0)
-    (2, 2, 0, -2)
+    (2, 2, 1, -1)
     """
     power = math.floor(math.log10(half_width))
     leading = round(half_width / 10.0**power, 1)
     if leading >= 9.5:
         power, leading = power + 1, 1.0
-    return (1 if leading < 1.95 else 0) - power
+    return (1 if leading < 2.5 else 0) - power
 
 
 def fixed(value: float, places: int) -> str:
@@ -67,7 +67,7 @@ def span(low: float, high: float, unit: str = "", half_width: float | None = Non
     Examples
     --------
     >>> span(0.2391, 0.3912, "mm"), span(110.14, 114.76), span(0.0, 0.0214, "mm")
-    ('0.24 to 0.39 mm', '110 to 115', '0 to 0.021 mm')
+    ('0.24 to 0.39 mm', '110.1 to 114.8', '0 to 0.021 mm')
     """
     width = half_width or (high - low) / 2.0
     if width <= 0.0:
@@ -88,7 +88,7 @@ def value_with_band(best: float, band: tuple[float, float], unit: str = "") -> s
     >>> value_with_band(0.3132, (0.2391, 0.3912), "mm")
     '0.31 mm (0.24 to 0.39 mm)'
     >>> value_with_band(112.4, (110.1, 114.8))
-    '112 (110 to 115)'
+    '112.4 (110.1 to 114.8)'
     >>> value_with_band(0.0201, (0.0021, 0.1533), "mm")
     '0.020 mm (0.002 to 0.15 mm)'
     """
@@ -134,6 +134,18 @@ def limit(value: float) -> str:
     """
     places = 1 - math.floor(math.log10(value))
     return fixed(math.ceil(value * 10.0**places - 1e-9) / 10.0**places, places)
+
+
+def stated(value: float) -> str:
+    """Return a tabulated value as tables print it, to two digits without idle zeros.
+
+    Examples
+    --------
+    >>> stated(0.1), stated(0.0015), stated(140.0)
+    ('0.1', '0.0015', '140')
+    """
+    text = significant(value, 2)
+    return text.rstrip("0").rstrip(".") if "." in text else text
 
 
 def percent(probability: float) -> str:

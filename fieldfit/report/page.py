@@ -63,7 +63,9 @@ def tied(text: Any) -> Any:
     >>> tied("12 mm") == "12\u00a0mm"
     True
     """
-    return _TIES.sub("\u00a0", text) if type(text) is str else text
+    if type(text) is not str:
+        return text
+    return _TIES.sub("\u00a0", text).replace("Hazen–Williams", "Hazen–\u2060Williams")
 
 
 @functools.cache

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from fieldfit.report.digits import limit, significant, span, value_with_band
+from fieldfit.report.digits import fixed, limit, significant, span, stated, value_with_band
 from fieldfit.report.finding import ReachFinding
 
 Span = tuple[float, float]
@@ -65,7 +65,7 @@ def _roughness(reach: ReachFinding) -> Strip | None:
         wide=f"{span(*wide)} with the formula's limit"
         if measured
         else f"under {limit(wide[1])} with the formula's limit",
-        new=f"new: {significant(new[0], 2)} to {significant(new[1], 2)}" if new else "",
+        new=f"new: {stated(new[0])} to {stated(new[1])}" if new else "",
         bars=_bars(best, own, wide, new, from_zero=True),
     )
 
@@ -96,7 +96,7 @@ def _ratio(reach: ReachFinding) -> Strip | None:
         value=f"{_value(best, (low, high))} times",
         own="",
         wide=f"{span(low, high)}, formula's limit included",
-        new=f"new: {significant(1.0 - off, 2)} to {significant(1.0 + off, 2)}",
+        new=f"new: {fixed(1.0 - off, 2)} to {fixed(1.0 + off, 2)}",
         bars=_bars(best, None, (low, high), (1.0 - off, 1.0 + off), from_zero=False),
     )
 

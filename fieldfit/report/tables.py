@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
 
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section, Tap
-from fieldfit.inference.wall import Band
+from fieldfit.inference.wall import Band, BudgetEntry
 from fieldfit.report.digits import (
     COVERAGE,
     fixed,
@@ -19,11 +20,16 @@ from fieldfit.report.digits import (
     plus_minus,
     significant,
     span,
+    stated,
     value_with_band,
 )
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 
 Row = tuple[str, ...]
+ACROSS = 7
+"""Most counts that stand side by side."""
+HARDLY = 0.01
+"""Share of the variance below which an error hardly counts [-]."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -67,7 +73,7 @@ def comparison(reach: ReachFinding) -> tuple[Row, ...]:
     new = reach.new_pipe
     if new is None:
         return ()
-    low, typical, high = (significant(r * 1e3, 2) for r in new.roughness_m)
+    low, typical, high = (stated(r * 1e3) for r in new.roughness_m)
     c_low, c_typical, c_high = (significant(c) for c in new.hazen_williams_c)
     ratio = value_with_band(new.head_loss_ratio[1], new.head_loss_ratio[::2])
     over = f"{100.0 * (new.limit - 1.0):.0f} %"
@@ -135,21 +141,32 @@ def _count(number: int, name: str) -> str:
 
 
 def budget(reach: ReachFinding) -> Table | None:
-    """Return each error with its shares, its effect on f, and its pull."""
+    """Return each error with its shares, its effect on f, and its pull; those that hardly count in one row."""
     if not reach.wall.budget:
         return None
     head = ("error", "share for the roughness", "share for C", "effect on friction factor", "pull")
-    rows = tuple(
-        (
-            entry.error,
-            percent(entry.share),
-            percent(entry.measurement_share) if entry.measurement_share > 0.0 else "none",
-            f"±{significant(100.0 * COVERAGE * entry.standard, 2)} %",
-            fixed(entry.pull, 1) if entry.pull else "–",
+    small = [e for e in reach.wall.budget if max(e.share, e.measurement_share) < HARDLY and abs(e.pull) < 1.0]
+    rows = [_budget_row(entry) for entry in reach.wall.budget if len(small) < 2 or entry not in small]
+    if len(small) > 1:
+        together = BudgetEntry(
+            error=f"{len(small)} smaller ones",
+            share=sum(entry.share for entry in small),
+            measurement_share=sum(entry.measurement_share for entry in small),
+            standard=math.hypot(*(entry.standard for entry in small)),
+            pull=0.0,
         )
-        for entry in reach.wall.budget
+        rows.append(_budget_row(together))
+    return Table(head=head, rows=tuple(rows))
+
+
+def _budget_row(entry: BudgetEntry) -> Row:
+    return (
+        entry.error,
+        percent(entry.share) if entry.share > 0.0 else "none",
+        percent(entry.measurement_share) if entry.measurement_share > 0.0 else "none",
+        f"±{significant(100.0 * COVERAGE * entry.standard, 2)} %",
+        fixed(entry.pull, 1) if entry.pull else "–",
     )
-    return Table(head=head, rows=rows)
 
 
 def rows(campaign: CampaignFinding) -> Table:
@@ -160,12 +177,17 @@ def rows(campaign: CampaignFinding) -> Table:
     counted = [
         ("used, water flowing", screening.used - at_rest),
         ("used, at rest", at_rest),
-        *((f"set aside: {reason}", count) for reason, count in screening.counts),
+        *((f"set aside: {reason}", int(count)) for reason, count in screening.counts),
         ("all rows of the log", total),
     ]
+    shares = ["all" if count == total else percent(count / total) if count else "none" for _, count in counted]
+    numbers = [str(count) for _, count in counted]
+    if len(counted) > ACROSS:
+        together = zip((name for name, _ in counted), numbers, shares, strict=True)
+        return Table(head=("", "rows", "share"), rows=tuple(together))
     return Table(
-        head=("", "rows", "share"),
-        rows=tuple((name, str(count), "all" if count == total else percent(count / total)) for name, count in counted),
+        head=("", *(name for name, _ in counted)),
+        rows=(("rows", *numbers), ("share", *shares)),
     )
 
 
@@ -174,23 +196,22 @@ def overview(finding: Finding, names: list[tuple[str, str]]) -> Table:
     lines = []
     every = [reach for campaign in finding.campaigns for reach in campaign.reaches]
     for (campaign, place), reach in zip(names, every, strict=True):
-        wall, new = reach.wall, reach.new_pipe
-        roughness, c = _result("", wall.roughness_m, 1e3), _result("", wall.hazen_williams_c)
-        wide = wall.roughness_m.with_correlation
-        lines.append(
-            (
-                f"{campaign}, {place}",
-                "no estimate" if roughness is None or wide is None else _short(roughness, 3),
-                "–" if c is None else _short(c, 2),
-                "–" if new is None else value_with_band(new.head_loss_ratio[1], new.head_loss_ratio[::2]),
-            )
-        )
+        new = reach.new_pipe
+        ratio = "–" if new is None else value_with_band(new.head_loss_ratio[1], new.head_loss_ratio[::2])
+        wall = reach.wall
+        cells = (_short(wall.roughness_m, True, 1e3), _short(wall.hazen_williams_c, False, 1.0), ratio)
+        lines.append((f"{campaign}, {place}", *cells))
     head = ("", "roughness, formula's limit included [mm]", "C, by the readings [–]", "head loss over new [–]")
     return Table(head=head, rows=tuple(lines))
 
 
-def _short(row: Row, column: int) -> str:
-    return row[column] if row[1] == "–" else f"{row[1]} ({row[column]})"
+def _short(band: Band, wide: bool, scale: float) -> str:
+    """Return best value and one of the ranges in one cell."""
+    ends = band.with_correlation if wide else band.measurement
+    if ends is None:
+        return "no estimate"
+    low, high = ends[0] * scale, ends[1] * scale
+    return f"under {limit(high)}" if band.best is None else value_with_band(band.best * scale, (low, high))
 
 
 def inputs(section: Section) -> tuple[Row, ...]:

@@ -123,7 +123,7 @@ def _new_words(reach: ReachFinding) -> str:
     low, best, high = new.head_loss_ratio
     times, between = value_with_band(best, (low, high)).split(" (")
     return (
-        f"It loses {times} times the head of new {new.material} ({between}; the probability that it loses "
+        f"This stretch loses {times} times the head of new {new.material} ({between}; the probability that it loses "
         f"over {100.0 * (new.limit - 1.0):.0f} % more than new is {percent(new.probability_worse)}."
     )
 
@@ -134,7 +134,7 @@ def _limit_words(wall: Wall) -> str:
         return ""
     first = max(wall.budget, key=lambda entry: entry.share)
     measured = max(wall.budget, key=lambda entry: entry.measurement_share)
-    told = f"What limits the certainty most is {first.error} ({percent(first.share)} of the variance)"
+    told = f"What limits the certainty most: {first.error} ({percent(first.share)} of the variance)"
     if measured is first:
         return f"{told}."
-    return f"{told}; among the measurements themselves it is {measured.error} ({percent(measured.measurement_share)})."
+    return f"{told}; among the measurements themselves: {measured.error} ({percent(measured.measurement_share)})."

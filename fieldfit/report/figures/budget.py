@@ -10,12 +10,13 @@ from fieldfit.inference.wall import BudgetEntry
 from fieldfit.report.digits import percent
 from fieldfit.report.figures import style
 from fieldfit.report.finding import ReachFinding
+from fieldfit.report.tables import HARDLY
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 MOST = 8
-"""Errors drawn by name; the rest are one bar together."""
+"""Most errors drawn by name."""
 
 
 def budget(reach: ReachFinding) -> Figure:
@@ -66,7 +67,8 @@ def budget(reach: ReachFinding) -> Figure:
 def _shares(entries: tuple[BudgetEntry, ...]) -> list[tuple[str, float, float]]:
     """Return name and both shares, the smallest errors together."""
     shares = [(entry.error, entry.share, entry.measurement_share) for entry in entries]
-    if len(shares) <= MOST + 1:
+    named = [share for share in shares if max(share[1:]) >= HARDLY][:MOST]
+    rest = [share for share in shares if share not in named]
+    if len(rest) < 2:
         return shares
-    rest = shares[MOST:]
-    return [*shares[:MOST], (f"{len(rest)} smaller ones", sum(s[1] for s in rest), sum(s[2] for s in rest))]
+    return [*named, (f"{len(rest)} smaller ones", sum(s[1] for s in rest), sum(s[2] for s in rest))]

@@ -70,7 +70,7 @@ def _draw(ax: Axes, curves: Curves, flow: Array, lines: dict[str, Array]) -> Non
     off = SLOPE_EXPONENT * curves.by_flow.new_limit
     draw_bands(ax, flow, (lines.get("own"), lines.get("wide")), lines.get("new"), off)
     if "new" in lines and curves.reach.new_pipe is not None:
-        text = f"new {curves.reach.new_pipe.material}\n± {100 * off:.0f} %"
+        text = f"new pipe\n± {100 * off:.0f} %"
         labels.append((float(lines["new"][-1]), text, style.NEW))
     ax.plot(flow, lines["smooth"], color=style.QUIET, **style.STROKES["dots"])
     labels.append((float(lines["smooth"][-1]), "smooth", style.QUIET))

@@ -64,7 +64,7 @@ def _lines(ax: Axes, curves: Curves) -> None:
     draw_bands(ax, flow, (loss(lines.own), wide), new, lines.new_limit)
     labels = []
     if new is not None and reach.new_pipe is not None:
-        labels.append((float(new[-1]), f"new {reach.new_pipe.material}\n± {100 * lines.new_limit:.0f} %", style.NEW))
+        labels.append((float(new[-1]), f"new pipe\n± {100 * lines.new_limit:.0f} %", style.NEW))
     if smooth is not None:
         ax.plot(flow, smooth, color=style.QUIET, **style.STROKES["dots"])
         labels.append((float(smooth[-1]), "smooth", style.QUIET))

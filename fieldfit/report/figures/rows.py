@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.readings import Screening
 from fieldfit.field.section import Section
 from fieldfit.report.figures import style
 from fieldfit.report.figures.clock import clock_ticks
@@ -40,10 +41,10 @@ def rows(campaign: CampaignFinding, section: Section) -> Figure:
     """
     lanes = 1 + len(campaign.screening.counts)
     foot = 11.0 + LANE_MM * lanes + 2.0
-    figure = style.blank(foot + 58.0)
-    flow = style.axes(figure, 12.0, foot + 33.0, 31.0, 6.0)
-    pressure = style.axes(figure, 12.0, foot, 31.0, 33.0)
-    strip = style.axes(figure, 12.0, 11.0, 31.0, 60.0)
+    figure = style.blank(foot + 54.0)
+    flow = style.axes(figure, 12.0, foot + 32.0, 31.0, 6.0)
+    pressure = style.axes(figure, 12.0, foot, 31.0, 30.0)
+    strip = style.axes(figure, 12.0, 11.0, 31.0, 56.0)
     time = campaign.log.time_s
     if campaign.log.kind == "sheet":
         time = np.arange(1.0, time.size + 1.0)
@@ -64,7 +65,7 @@ def rows(campaign: CampaignFinding, section: Section) -> Figure:
 def _flow(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
     """Draw the flow, the used rows darker."""
     flow = campaign.log.flow_m3_s * 1e3
-    style.frame(ax, (0.0, 1.0), _range(flow), (6, 4))
+    style.frame(ax, (0.0, 1.0), _range(flow, campaign.screening), (6, 4))
     _line(ax, time, flow, style.READING, campaign.log.kind == "sheet")
     style.label(ax, "", "flow [L/s]")
 
@@ -72,7 +73,7 @@ def _flow(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
 def _pressures(ax: Axes, campaign: CampaignFinding, section: Section, time: Array) -> None:
     """Draw the pressures, each named at its last value."""
     kilopascals = campaign.log.pressure_pa * 1e-3
-    style.frame(ax, (0.0, 1.0), _range(kilopascals), (6, 4))
+    style.frame(ax, (0.0, 1.0), _range(kilopascals, campaign.screening), (6, 4))
     shades = np.linspace(0.0, 1.0, len(section.taps))
     labels = []
     for tap, values, shade in zip(section.taps, kilopascals, shades, strict=True):
@@ -90,6 +91,7 @@ def _line(ax: Axes, time: Array, values: Array, colour: str, dots: bool) -> None
     if dots:
         ax.plot(time, values, "o", color=colour, markersize=3.6)
         return
+    _off_scale(ax, time, values)
     if time.size > 2 * BUCKETS:
         time, values = thinned(time, values)
     ax.plot(time, values, color=colour, linewidth=0.9)
@@ -110,14 +112,27 @@ def thinned(time: Array, values: Array) -> tuple[Array, Array]:
     return np.repeat(np.fmin.reduceat(time, edges), 2), pair
 
 
-def _range(values: Array) -> tuple[float, float]:
-    """Return a range that holds all finite values with a little room."""
-    finite = values[np.isfinite(values)]
+def _range(values: Array, screening: Screening) -> tuple[float, float]:
+    """Return a range that holds the steady and unsteady rows; a spike that was set aside may leave it."""
+    sound = values[..., np.isin(screening.reason, ("", "unsteady"))]
+    finite = sound[np.isfinite(sound)]
+    if not finite.size:
+        finite = values[np.isfinite(values)]
     if not finite.size:
         return 0.0, 1.0
     low, high = float(finite.min()), float(finite.max())
     room = 0.06 * (high - low) or 0.05 * abs(high) or 1.0
     return low - room, high + room
+
+
+def _off_scale(ax: Axes, time: Array, values: Array) -> None:
+    """Mark where values leave the scale."""
+    low, high = ax.get_ylim()
+    for off, edge, mark in ((values > high, high, "^"), (values < low, low, "v")):
+        if off.any():
+            start, _, _ = runs(time, off.astype(np.int64), 0.005 * float(np.nanmax(time) - np.nanmin(time)))
+            edges = np.full(start.size, edge)
+            ax.plot(start, edges, mark, color=style.ASIDE, markersize=4.0, clip_on=False)
 
 
 def _lanes(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
@@ -133,12 +148,12 @@ def _lanes(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
     for kind, colour in ((flowing, style.READING), (still, style.OWN_BAND)):
         _blocks(ax, 0, runs(time, np.where(kind, screening.plateau, 0), join)[:2], colour)
     _numbers(ax, runs(time, screening.plateau, join), set(static.tolist()))
-    labels = [(0.0, f"used, {screening.used} rows", style.READING)]
+    labels = [(0.0, f"{screening.used} rows used", style.READING)]
     for lane, (reason, count) in enumerate(screening.counts, start=1):
         _blocks(ax, lane, runs(time, (screening.reason == reason).astype(np.int64), join)[:2], style.ASIDE)
-        labels.append((float(lane), f"{style.shorten(reason, 22)}, {count}", style.QUIET))
+        labels.append((float(lane), style.shorten(f"{count} {reason}", 21), style.QUIET))
     for height, text, colour in labels:
-        style.write(ax, (1.012, height), text, colour, transform=ax.get_yaxis_transform(), va="center")
+        style.write(ax, (1.012, height), text, colour, transform=ax.get_yaxis_transform(), va="center", fontsize=7.0)
 
 
 def runs(time: Array, code: NDArray[np.int64], join: float) -> tuple[Array, Array, NDArray[np.int64]]:

@@ -167,7 +167,8 @@ def key(ax: Axes, place: tuple[float, float], entries: Sequence[tuple[str, str, 
     if len(entries) > 1:
         top, tall = place[1] + 0.6 * row_mm / height_mm, (len(entries) + 0.2) * row_mm / height_mm
         ground = Rectangle((left, top - tall), 66.0 / width_mm, tall, color=PAPER, linewidth=0, transform=ax.transAxes)
-        ax.add_patch(ground)
+        # Above the grid, below every line.
+        ax.add_patch(ground).set_zorder(0.6)
     for index, (mark, colour, text) in enumerate(entries):
         middle = place[1] - index * row_mm / height_mm
         if mark == "band":
