@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import warnings
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
@@ -86,6 +87,8 @@ def read_rows(source: LogSource, form: Form, said: list[str]) -> tuple[Rows, str
     try:
         table = _table(source, form, "float64")
         careful = False
+    except InputError:
+        raise
     except UnicodeDecodeError:
         raise source.undecodable() from None
     except (ValueError, OverflowError):
@@ -109,23 +112,28 @@ def _table(source: LogSource, form: Form, numbers_as: str) -> DataFrame:
     import pandas as pd
 
     kinds: dict[int, Any] = {place: numbers_as if place in form.numbers else "str" for place in range(form.width)}
-    with source.open() as file:
+    with source.open() as file, warnings.catch_warnings():
+        warnings.simplefilter("error", pd.errors.ParserWarning)
         for _ in range(form.headings.line):
             file.readline()
-        table: DataFrame = pd.read_csv(
-            file,
-            engine="c",
-            sep=form.headings.separator,
-            decimal=form.decimal,
-            header=None,
-            names=range(form.width),
-            index_col=False,
-            dtype=kinds,
-            keep_default_na=False,
-            na_values=_MARKS_AS_WRITTEN,
-            skip_blank_lines=False,
-            skipinitialspace=True,
-        )
+        try:
+            table: DataFrame = pd.read_csv(
+                file,
+                engine="c",
+                sep=form.headings.separator,
+                decimal=form.decimal,
+                header=None,
+                names=range(form.width),
+                index_col=False,
+                dtype=kinds,
+                keep_default_na=False,
+                na_values=_MARKS_AS_WRITTEN,
+                skip_blank_lines=False,
+                skipinitialspace=True,
+            )
+        except pd.errors.ParserWarning:
+            seen, where = "the first row has a field that runs over several lines", source.path.name
+            raise InputError(seen, "Export one row of readings in a line.", where) from None
     return table
 
 

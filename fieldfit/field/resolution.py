@@ -60,9 +60,10 @@ def _decimals(values: Array) -> int | None:
     largest = float(np.max(np.abs(values)))
     for decimals in range(_MOST_DECIMALS + 1):
         scaled = values * 10.0**decimals
-        if largest * 10.0**decimals > 1e15:
+        rounding = 16.0 * float(np.spacing(largest * 10.0**decimals))
+        if rounding > 0.01:
             return None
-        if np.all(np.abs(scaled - np.rint(scaled)) <= 16.0 * np.spacing(largest * 10.0**decimals)):
+        if np.all(np.abs(scaled - np.rint(scaled)) <= rounding):
             return decimals
     return None
 
