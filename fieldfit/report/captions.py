@@ -74,10 +74,11 @@ def budget(reach: ReachFinding) -> str:
     entries = reach.wall.budget
     by_c = max(entries, key=lambda entry: entry.measurement_share)
     first = max(entries, key=lambda entry: entry.share)
-    told = f"The longest bars are what to improve: for the roughness {first.error} ({percent(first.share)})"
+    told = f"The longest bar for the roughness is {first.error} ({percent(first.share)})"
     if by_c.error == first.error:
-        return f"{told}, and for C as well."
-    return f"{told}, for C {by_c.error} ({percent(by_c.measurement_share)})."
+        return f"{told}, and it is the longest for C as well."
+    beyond = ", which no better instrument can shorten" if first.measurement_share == 0.0 else ""
+    return f"{told}{beyond}; for C it is {by_c.error} ({percent(by_c.measurement_share)})."
 
 
 def rows(campaign: CampaignFinding) -> str:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import functools
+import html
 import re
 import sys
 from importlib.metadata import version
@@ -53,6 +54,14 @@ def page(finding: Finding) -> str:
         for shown in _shown(campaign):
             shown["svg"] = Markup(drawn[shown["name"]])
     return _environment().get_template("page.html").render(_context(finding, campaigns)) + "\n"
+
+
+def page_in_notebook(finding: Finding) -> str:
+    """Return the page in a frame of its own, so that its style does not reach the notebook around it."""
+    return (
+        f'<iframe title="Report" style="width: 100%; height: 60em; border: 0" srcdoc="{html.escape(page(finding))}">'
+        "</iframe>"
+    )
 
 
 def tied(text: Any) -> Any:

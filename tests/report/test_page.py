@@ -7,7 +7,7 @@ from html.parser import HTMLParser
 import pytest
 from invented import no_estimate, plant_line, smooth_pipe, street_main
 
-from fieldfit.report.page import page, tied
+from fieldfit.report.page import page, page_in_notebook, tied
 
 HOSTILE = "<script>alert('x')</script> & \"quotes\" $\\frac$ -->"
 FINDINGS = {"measured": plant_line, "upper limit": smooth_pipe, "several": street_main, "no estimate": no_estimate}
@@ -158,6 +158,12 @@ def test_a_reach_without_any_plateau_still_prints():
     text = page(replace(finding, campaigns=(replace(campaign, reaches=(bare,)),)))
     assert "No steady flow was found in the log." in text
     assert "The log itself" in text
+
+
+def test_in_a_notebook_the_page_keeps_to_its_frame():
+    read = Reader(page_in_notebook(plant_line()))
+    assert read.tags == ["iframe"]
+    assert not read.ids
 
 
 def test_a_number_keeps_hold_of_its_unit():

@@ -15,6 +15,8 @@ from fieldfit.report.tables import HARDLY
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
+ROW_MM = 5.6
+"""Height of one error with its two bars."""
 MOST = 8
 """Most errors drawn by name."""
 
@@ -33,7 +35,8 @@ def budget(reach: ReachFinding) -> Figure:
         The figure.
     """
     shares = _shares(reach.wall.budget)
-    figure = style.blank(19.0 + 5.6 * len(shares))
+    highest = 100.0 * max((max(wide, own) for _, wide, own in shares), default=1.0)
+    figure = style.blank(19.0 + ROW_MM * len(shares))
     ax = style.axes(figure, 52.0, 11.0, 12.0, 8.0)
     place = np.arange(len(shares), dtype=np.float64)
     for offset, parts, colour in (
@@ -42,25 +45,19 @@ def budget(reach: ReachFinding) -> Figure:
     ):
         ax.barh(place + offset, [100.0 * part for part in parts], height=0.36, color=colour)
         for at, part in zip(place + offset, parts, strict=True):
-            text = percent(part) if part > 0.0 else "none"
-            style.write(ax, (100.0 * part + 0.8, at + 0.02), text, va="center", fontsize=6.5)
+            if part >= HARDLY or part == 0.0:
+                text = percent(part) if part else "none"
+                style.write(ax, (100.0 * part + 0.008 * highest, at + 0.02), text, va="center", fontsize=6.5)
     ax.grid(visible=False, axis="y")
     ax.grid(axis="x", color=style.HAIR, linewidth=0.6)
     style.ticks(ax, "y", place, [share[0] for share in shares])
-    highest = 100.0 * max((max(own, wide) for _, own, wide in shares), default=1.0)
     style.ticks(ax, "x", style.steps(0.0, highest, 6))
     ax.set_xlim(0.0, 1.02 * highest)
     ax.set_ylim(len(shares) - 0.4, -0.6)
     style.label(ax, "share of the variance [%]", "")
-    across = style.WIDTH_MM - 64.0
-    style.key(
-        ax,
-        (0.0, 1.0 + 3.6 / (5.6 * len(shares))),
-        [("band", style.OWN_BAND, "of the roughness, with the formula's limit")],
-    )
-    style.key(
-        ax, (66.0 / across, 1.0 + 3.6 / (5.6 * len(shares))), [("band", style.READING, "of C, by the readings alone")]
-    )
+    above = 1.0 + 3.6 / (ROW_MM * len(shares))
+    style.key(ax, (0.0, above), [("band", style.OWN_BAND, "of the roughness, with the formula's limit")])
+    style.key(ax, (66.0 / (style.WIDTH_MM - 64.0), above), [("band", style.READING, "of C, by the readings alone")])
     return figure
 
 

@@ -39,19 +39,29 @@ def hazen_williams(curves: Curves) -> Figure:
     turbulent = curves.by_flow.reynolds >= TURBULENT_LIMIT
     lines = {name: c_from_friction_factor(f, flow, bore)[..., turbulent] for name, f in _factors(curves).items()}
     values = curves.reach.wall.plateaus
+    off = SLOPE_EXPONENT * curves.by_flow.new_limit  # a head loss off by x moves C by 0.54 x the other way
     tested = flow[turbulent] >= 0.9 * float(curves.points.flow_m3_s.min())
-    held = [line[..., tested] for name, line in lines.items() if name != "smooth" and tested.any()]
+    held = [line[..., tested] for name, line in lines.items() if name != "smooth"]
+    held += [lines["new"][tested] * (1.0 + side * off) for side in (-1.0, 1.0) if "new" in lines]
     if values is not None:
         c, bars = values.hazen_williams_c, interval(values.hazen_williams_c, values.hazen_williams_relative)
         held += [c, np.clip(bars, 0.75 * c, 1.3 * c)]
-    low, high = (min(np.min(h) for h in held), max(np.max(h) for h in held)) if held else (60.0, 160.0)
-    room = 0.06 * (high - low) + 1.0
-    style.frame(ax, (0.0, float(flow[-1]) * 1e3), (float(low - room), float(high + room)), (8, 5))
-    _draw(ax, curves, flow[turbulent] * 1e3, lines)
+    style.frame(ax, (0.0, float(flow[-1]) * 1e3), _range(held), (8, 5))
+    _draw(ax, flow[turbulent] * 1e3, lines, off)
     if values is not None:
         style.points(ax, values.flow_m3_s * 1e3, c, np.clip(bars, *ax.get_ylim()))
     style.label(ax, "flow [L/s]", "Hazen–Williams C [–]")
     return figure
+
+
+def _range(held: list[Array]) -> tuple[float, float]:
+    """Return a range with a little room about everything that must be seen."""
+    parts = [part for part in held if part.size]
+    if not parts:
+        return 60.0, 160.0
+    low, high = (float(end(np.concatenate([np.ravel(part) for part in parts]))) for end in (np.min, np.max))
+    room = 0.06 * (high - low) + 1.0
+    return low - room, high + room
 
 
 def _factors(curves: Curves) -> dict[str, Array]:
@@ -61,15 +71,13 @@ def _factors(curves: Curves) -> dict[str, Array]:
     return {name: f for name, f in factors.items() if f is not None}
 
 
-def _draw(ax: Axes, curves: Curves, flow: Array, lines: dict[str, Array]) -> None:
+def _draw(ax: Axes, flow: Array, lines: dict[str, Array], off: float) -> None:
     """Draw the lines, named at their right ends."""
     if not flow.size:
         return
     labels = []
-    # A head loss off by x moves C by 0.54 x the other way.
-    off = SLOPE_EXPONENT * curves.by_flow.new_limit
     draw_bands(ax, flow, (lines.get("own"), lines.get("wide")), lines.get("new"), off)
-    if "new" in lines and curves.reach.new_pipe is not None:
+    if "new" in lines:
         text = f"new pipe\n± {100 * off:.0f} %"
         labels.append((float(lines["new"][-1]), text, style.NEW))
     ax.plot(flow, lines["smooth"], color=style.QUIET, **style.STROKES["dots"])
