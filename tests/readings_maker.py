@@ -84,5 +84,6 @@ def make_readings(
         density_kg_m3=np.full(count, 998.2),
         viscosity_m2_s=np.full(count, viscosity),
         viscosity_standard=0.02,
+        turbulent_from_m3_s=4000.0 * np.pi / 4.0 * bore * viscosity,
         set_aside=(),
     )

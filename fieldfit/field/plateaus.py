@@ -11,7 +11,8 @@ from fieldfit.errors import InputError
 from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, Screening
 from fieldfit.field.row_noise import noise_of_mean
-from fieldfit.field.screens import OUTLIER, REVERSED, UNSTEADY, limit
+from fieldfit.field.row_screens import ROW_SCREENS, still_below
+from fieldfit.field.screens import OUTLIER, UNSTEADY, limit
 from fieldfit.field.section import Section
 from fieldfit.field.steady import steady_stretches
 
@@ -20,6 +21,12 @@ Rows = NDArray[np.int64]
 
 EXPONENT = 1.9
 """Power of the flow that head loss roughly goes with, where only a correction of second order needs it."""
+HAND_ROWS = 100
+"""Most rows of a sheet with a clock."""
+HAND_SECONDS = 20.0
+"""Time between readings from which they may have been written by hand [s]."""
+END_ROWS = 5
+"""Rows at either end of a plateau that are averaged to see whether and how the flow changes."""
 
 
 def screen(log: Log, section: Section) -> Screening:
@@ -45,16 +52,22 @@ def screen(log: Log, section: Section) -> Screening:
     reason = log.reason.astype(object)
     plateau = np.zeros(len(reason), dtype=np.int64)
     _check_direction(log, section)
-    largest = float(np.nanmax(np.abs(log.flow_m3_s)))
-    still = limit(section, "static_flow") * largest
-    reason[(reason == "") & (log.flow_m3_s < -still)] = REVERSED
+    for why, caught in ROW_SCREENS:
+        reason[(reason == "") & caught(log, section)] = why
     good = np.flatnonzero(reason == "")
-    if log.kind == "sheet":
-        plateau[good] = np.arange(1, len(good) + 1)
-    else:
+    if log.kind == "logger":
         _number_plateaus(log, section, good, (reason, plateau))
+    if log.kind == "sheet" or (not np.any(plateau) and read_by_hand(log)):
+        reason[good] = ""
+        plateau[good] = np.arange(1, len(good) + 1)
     reason[(reason == "") & (plateau == 0)] = UNSTEADY
     return _screening(reason.astype(np.str_), plateau)
+
+
+def read_by_hand(log: Log) -> bool:
+    """Return whether a log with a clock looks like a sheet all the same: few rows, far apart."""
+    rows = len(log.time_s)
+    return rows < 2 or (rows <= HAND_ROWS and float(np.nanmedian(np.diff(log.time_s))) >= HAND_SECONDS)
 
 
 def set_plateaus_aside(screening: Screening, reasons: dict[int, str]) -> Screening:
@@ -85,7 +98,7 @@ def _check_direction(log: Log, section: Section) -> None:
             "See the reasons in the log's columns; every reading needs flow and all pressures.",
             log.file,
         )
-    moving = np.abs(flow) > limit(section, "static_flow") * np.max(np.abs(flow))
+    moving = np.abs(flow) > still_below(log, section)
     if np.any(moving) and np.all(flow[moving] < 0.0):
         raise InputError(
             f"the flow is negative in every row that flows (largest {np.min(flow) * 1000.0:.3g} L/s)",
@@ -100,10 +113,10 @@ def _number_plateaus(log: Log, section: Section, good: Rows, outcome: tuple[NDAr
     reason, plateau = outcome
     number = 0
     for first, stop in steady_stretches(log.flow_m3_s[good], limit(section, "flow_step")):
-        rows = good[first:stop]
-        rows, edges = _trim(log.flow_m3_s, rows)
-        reason[edges] = UNSTEADY
+        rows = _settled(log.flow_m3_s, good[first:stop])
         far = _outliers(log, rows, limit(section, "outlier"))
+        inside = np.flatnonzero(~far)
+        rows, far = rows[inside[0] : inside[-1] + 1], far[inside[0] : inside[-1] + 1]
         kept = rows[~far]
         if len(kept) < limit(section, "plateau_rows") or _drifts(log, section, kept):
             continue
@@ -112,13 +125,23 @@ def _number_plateaus(log: Log, section: Section, good: Rows, outcome: tuple[NDAr
         plateau[kept] = number
 
 
-def _trim(flow: Array, rows: Rows) -> tuple[Rows, Rows]:
-    """Part a stretch into its steady middle and the settling rows at its ends."""
-    distance = np.abs(flow[rows] - np.median(flow[rows]))
+def _settled(flow: Array, rows: Rows) -> Rows:
+    """Return a stretch without the rows at its ends in which the flow was still on its way.
+
+    Single rows far off the middle go first; then, as the last of a ramp hides in the noise of single rows, ends
+    whose running mean is off the middle.
+    """
+    middle = float(np.median(flow[rows]))
+    distance = np.abs(flow[rows] - middle)
     spread = 1.4826 * float(np.median(distance))
-    inside = np.flatnonzero(distance <= max(4.0 * spread, 0.005 * abs(float(np.median(flow[rows])))))
+    inside = np.flatnonzero(distance <= max(4.0 * spread, 0.005 * abs(middle)))
     first, stop = int(inside[0]), int(inside[-1]) + 1
-    return rows[first:stop], np.concatenate([rows[:first], rows[stop:]])
+    near = max(1.8 * spread, 0.003 * abs(middle))
+    while stop - first > 2 * END_ROWS and abs(float(np.mean(flow[rows[first : first + END_ROWS]])) - middle) > near:
+        first += 1
+    while stop - first > 2 * END_ROWS and abs(float(np.mean(flow[rows[stop - END_ROWS : stop]])) - middle) > near:
+        stop -= 1
+    return rows[first:stop]
 
 
 def _outliers(log: Log, rows: Rows, limit_sd: float) -> NDArray[np.bool_]:
@@ -138,18 +161,21 @@ def _drifts(log: Log, section: Section, rows: Rows) -> bool:
     """Return whether the flow changes too much from end to end of a stretch."""
     flow = log.flow_m3_s[rows]
     mean = float(np.mean(flow))
-    largest = float(np.nanmax(np.abs(log.flow_m3_s)))
-    if abs(mean) < limit(section, "static_flow") * largest:
+    if abs(mean) < still_below(log, section):
         return False
     span = float(log.time_s[rows[-1]] - log.time_s[rows[0]])
-    return abs(_slope(log.time_s[rows], flow)) * span > limit(section, "drift") * abs(mean)
+    return abs(_mean_change(log.time_s[rows], flow)) * span > limit(section, "drift") * abs(mean)
 
 
-def _slope(time: Array, values: Array) -> float:
-    """Return the least-squares slope over time, zero where time stands still."""
-    centred = time - np.mean(time)
-    square = float(centred @ centred)
-    return float(centred @ values) / square if square > 0.0 else 0.0
+def _mean_change(time: Array, values: Array) -> float:
+    """Return the mean rate of change: last less first over the time between, each a mean of a few rows.
+
+    Inertia asks for the mean of dQ/dt, and that is this ratio whatever the path; a line of least squares would
+    miss the hook that a valve move leaves at one end. Zero where time stands still.
+    """
+    few = max(min(END_ROWS, len(time) // 2), len(time) // 10, 1)
+    span = float(np.mean(time[-few:]) - np.mean(time[:few]))
+    return float(np.mean(values[-few:]) - np.mean(values[:few])) / span if span > 0.0 else 0.0
 
 
 def summarise(log: Log, screening: Screening, section: Section, weight_pa_m: float) -> Plateaus:
@@ -174,8 +200,9 @@ def summarise(log: Log, screening: Screening, section: Section, weight_pa_m: flo
     numbers = np.unique(screening.plateau[screening.plateau > 0])
     members = [np.flatnonzero(screening.plateau == number) for number in numbers]
     flow = np.array([np.mean(log.flow_m3_s[rows]) for rows in members])
-    pressure = np.array([np.mean(log.pressure_pa[:, rows], axis=1) for rows in members]).reshape(len(members), -1).T
-    static = np.abs(flow) < limit(section, "static_flow") * float(np.nanmax(np.abs(log.flow_m3_s)))
+    pressure = np.array([np.mean(log.pressure_pa[:, rows], axis=1) for rows in members])
+    pressure = pressure.reshape(len(members), len(section.taps)).T
+    static = np.abs(flow) < still_below(log, section)
     noise = [
         noise_of_mean(log, members, reach, _slopes(flow, pressure, static, _rest(section, reach, weight_pa_m), reach))
         for reach in range(len(section.taps) - 1)
@@ -187,7 +214,7 @@ def summarise(log: Log, screening: Screening, section: Section, weight_pa_m: flo
         end_s=np.array([log.time_s[rows[-1]] for rows in members]),
         rows=np.array([len(rows) for rows in members]),
         flow_m3_s=flow,
-        flow_slope_m3_s2=np.array([_slope(log.time_s[rows], log.flow_m3_s[rows]) for rows in members])
+        flow_slope_m3_s2=np.array([_mean_change(log.time_s[rows], log.flow_m3_s[rows]) for rows in members])
         * (log.kind == "logger"),
         pressure_pa=pressure,
         temperature_degc=np.array([_temperature(log, rows, section) for rows in members]),

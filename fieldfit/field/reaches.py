@@ -78,6 +78,11 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
         density_kg_m3=section.liquid.density_kg_m3(temperature),
         viscosity_m2_s=section.liquid.viscosity_m2_s(temperature),
         viscosity_standard=_viscosity_standard(section, temperature),
+        turbulent_from_m3_s=limit(section, "turbulent")
+        * np.pi
+        / 4.0
+        * section.bore.value
+        * float(np.max(section.liquid.viscosity_m2_s(plateaus.temperature_degc), initial=0.0)),
         set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why),
     )
 

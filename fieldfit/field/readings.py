@@ -116,5 +116,7 @@ class ReachReadings:
     """(K,) its kinematic viscosity [m²/s]."""
     viscosity_standard: float
     """Relative standard uncertainty of the viscosity, temperature included [-]."""
+    turbulent_from_m3_s: float
+    """Flow from which the reach is surely turbulent [m³/s]."""
     set_aside: tuple[tuple[int, str], ...]
     """Plateaus of this reach that carry no roughness: number and reason."""

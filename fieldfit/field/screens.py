@@ -26,9 +26,9 @@ LIMITS = {
     for limit in (
         Limit(
             name="static_flow",
-            value=0.01,
+            value=0.002,
             unit="-",
-            meaning="Rows whose flow is under this share of the largest flow are static.",
+            meaning="Flow under this share of the largest, or under what the meter can tell from none, is static.",
         ),
         Limit(
             name="flow_step",
@@ -44,6 +44,12 @@ LIMITS = {
         ),
         Limit(
             name="plateau_rows", value=8.0, unit="-", meaning="Fewer rows than this make no plateau in a logger's file."
+        ),
+        Limit(
+            name="stuck",
+            value=10.0,
+            unit="-",
+            meaning="A gauge that repeats itself over this many times its usual run of equal readings is stuck.",
         ),
         Limit(
             name="outlier",
@@ -65,6 +71,8 @@ LIMITS = {
 
 MISSING = "missing value"
 CLOCK = "clock repeated or backwards"
+STUCK = "stuck gauge"
+RANGE = "out of range"
 UNSTEADY = "unsteady"
 OUTLIER = "outlier"
 REVERSED = "reversed flow"
@@ -73,7 +81,7 @@ CRITICAL = "critical zone"
 UNRESOLVED = "head loss below resolution"
 NEGATIVE = "negative head loss"
 
-REASONS = (MISSING, CLOCK, REVERSED, UNSTEADY, OUTLIER, LAMINAR, CRITICAL, NEGATIVE, UNRESOLVED)
+REASONS = (MISSING, CLOCK, RANGE, STUCK, REVERSED, UNSTEADY, OUTLIER, LAMINAR, CRITICAL, NEGATIVE, UNRESOLVED)
 """Every reason a row can be set aside for, in the order they are tried."""
 
 

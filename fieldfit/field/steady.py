@@ -53,7 +53,7 @@ def steady_stretches(flow: Array, step: float) -> list[tuple[int, int]]:
 def _relative_level(flow: Array) -> Array:
     """Return flow on a scale where a difference is a relative change, absolute near zero."""
     largest = float(np.max(np.abs(flow)))
-    small = 0.05 * largest if largest > 0.0 else 1.0
+    small = 0.05 * largest if largest > 1e-300 else 1.0
     return np.asarray(np.sign(flow) * np.log1p(np.abs(flow) / small))
 
 

@@ -2,40 +2,30 @@
 
 from __future__ import annotations
 
-from typing import Any, NamedTuple
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Correlation
-from fieldfit.hydraulics.friction import relative_roughness, smooth
+from fieldfit.hydraulics.friction import smooth
 from fieldfit.hydraulics.friction_laws import LAWS, relative_roughness_by_law
 from fieldfit.hydraulics.hazen_williams import c_from_friction_factor
 from fieldfit.inference.fit import NORMAL_95, Fit, fit_reach
 from fieldfit.inference.head_model import HeadModel, head_model
 from fieldfit.inference.monte_carlo import monte_carlo
 from fieldfit.inference.plateau_values import plateau_values
+from fieldfit.inference.verdict import Verdict, judge, ln_smooth, roughness_at, without_loss, without_readings
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Span, State, Wall
 
 Array = NDArray[np.float64]
 
-ROUGHEST_WALL = 0.05
-"""ε/D above which the loss is not roughness: the chart ends there."""
-SMOOTHEST_SHARE = 0.9
-"""Share of the smooth pipe's f under which the data, not the pipe, are at fault."""
 ONE_SIDED_95 = 0.05
 
 NOTHING = Band(best=None, measurement=None, with_correlation=None)
 READINGS_NOISE = "scatter of the readings"
 CORRELATION = "friction correlation"
-
-
-class Verdict(NamedTuple):
-    """State of the answer and why."""
-
-    state: State
-    because: str
 
 
 def estimate(readings: ReachReadings, limit: Correlation) -> Wall:
@@ -54,17 +44,18 @@ def estimate(readings: ReachReadings, limit: Correlation) -> Wall:
         Always an answer, or *no estimate* with the reason.
     """
     if len(readings.flow_m3_s) == 0:
-        return _without_readings(readings)
+        return _no_estimate(without_readings(readings), None, None)
     model = head_model(readings, limit)
     values = plateau_values(model)
     if np.all(values.friction_loss_m < 2.0 * values.friction_loss_standard_m):
-        return _without_fit(model, values)
+        return _no_estimate(without_loss(values), model, values)
     fit = fit_reach(model)
     wide = _with_correlation(fit, limit.standard)
-    verdict = _verdict(fit, wide)
+    verdict = judge(fit.model, fit.ln_friction, fit.interval, wide)
     return Wall(
         state=verdict.state,
         because=verdict.because,
+        advice=verdict.advice,
         roughness_m=_roughness(verdict.state, fit, wide),
         hazen_williams_c=_c_band(fit, wide),
         friction_factor=Band(
@@ -89,31 +80,6 @@ def _with_correlation(fit: Fit, standard: float) -> Span:
     return fit.ln_friction - float(np.hypot(below, level)), fit.ln_friction + float(np.hypot(above, level))
 
 
-def _verdict(fit: Fit, wide: Span) -> Verdict:
-    """Decide the state by rule."""
-    at_smooth = _ln_smooth(fit.model)
-    best, bore = fit.ln_friction, fit.model.readings.bore.value
-    if best < at_smooth + np.log(SMOOTHEST_SHARE) and fit.interval[1] < at_smooth:
-        return Verdict(
-            "no estimate",
-            f"The friction factor reads {np.exp(best - at_smooth):.2f} of a perfectly smooth pipe's, further below it "
-            "than the stated errors allow: a fault in the data, not a good pipe. Check meter, units, bore and the "
-            "order of the gauges.",
-        )
-    wall = _roughness_at(fit.model, best) / bore
-    if wall > ROUGHEST_WALL:
-        return Verdict(
-            "no estimate",
-            f"Read as roughness the loss would need ε/D of {wall:.2g}, above {ROUGHEST_WALL:g}: that is not a "
-            "roughness. Look for a smaller bore, a local loss or a wrong unit.",
-        )
-    if wide[0] <= at_smooth:
-        return Verdict(
-            "upper limit", "Within measurement errors and the correlation's limit the wall may be perfectly smooth."
-        )
-    return Verdict("measured", "The friction lies clear above a smooth pipe's.")
-
-
 def _roughness(state: State, fit: Fit, wide: Span) -> Band:
     """Turn the intervals of ln f into roughness, by state."""
     if state == "no estimate":
@@ -125,7 +91,7 @@ def _roughness(state: State, fit: Fit, wide: Span) -> Band:
             with_correlation=(0.0, _upper_limit(fit, wide[1])),
         )
     return Band(
-        best=_roughness_at(fit.model, fit.ln_friction),
+        best=roughness_at(fit.model, fit.ln_friction),
         measurement=_roughness_span(fit.model, fit.interval),
         with_correlation=_roughness_span(fit.model, wide),
     )
@@ -141,19 +107,13 @@ def _upper_limit(fit: Fit, high: float) -> float:
     from scipy.special import ndtr, ndtri
 
     spread = (high - fit.ln_friction) / NORMAL_95
-    above = float(ndtr((fit.ln_friction - _ln_smooth(fit.model)) / spread))
-    return _roughness_at(fit.model, fit.ln_friction - spread * float(ndtri(ONE_SIDED_95 * max(above, 1e-12))))
-
-
-def _roughness_at(model: HeadModel, ln_friction: float) -> float:
-    """Return the roughness that gives ln f at the reference [m], zero when smoother than smooth."""
-    relative = relative_roughness(np.exp(ln_friction), model.reference.reynolds)
-    return max(float(relative), 0.0) * model.readings.bore.value
+    above = float(ndtr((fit.ln_friction - ln_smooth(fit.model)) / spread))
+    return roughness_at(fit.model, fit.ln_friction - spread * float(ndtri(ONE_SIDED_95 * max(above, 1e-12))))
 
 
 def _roughness_span(model: HeadModel, interval: Span) -> Span:
     """Return the roughness at both ends of an interval of ln f [m]."""
-    return _roughness_at(model, interval[0]), _roughness_at(model, interval[1])
+    return roughness_at(model, interval[0]), roughness_at(model, interval[1])
 
 
 def _c_at(model: HeadModel, ln_friction: float) -> float:
@@ -200,11 +160,6 @@ def _other_laws(fit: Fit) -> tuple[tuple[str, float | None], ...]:
     return tuple((name, None if relative is None else relative * bore) for name, relative in found)
 
 
-def _ln_smooth(model: HeadModel) -> float:
-    """Return ln f of a smooth pipe at the reference [-]."""
-    return float(np.log(smooth(model.reference.reynolds)))
-
-
 def _exp(interval: Span) -> Span:
     """Return an interval of ln f as one of f."""
     return float(np.exp(interval[0])), float(np.exp(interval[1]))
@@ -224,48 +179,16 @@ def _place(model: HeadModel) -> dict[str, Any]:
     }
 
 
-def _without_readings(readings: ReachReadings) -> Wall:
-    """Return the answer when no plateau carries roughness."""
-    return _no_estimate(_why_no_readings(readings), None, None)
-
-
-def _why_no_readings(readings: ReachReadings) -> str:
-    """Say why no plateau is left."""
-    reasons = dict.fromkeys(reason for _, reason in readings.set_aside)
-    if not reasons:
-        return (
-            "No steady flow was found in the log: every row was set aside or static. Hold each flow until it is steady."
-        )
-    listed = ", ".join(reasons)
-    return f"No plateau carries a roughness ({listed}). Test at a larger flow."
-
-
-def _without_fit(model: HeadModel, values: PlateauValues) -> Wall:
-    """Return the answer when no head loss stands clear of its uncertainty."""
-    if np.all(values.friction_loss_m < -2.0 * values.friction_loss_standard_m):
-        because = (
-            "The head loss is negative at every flow, by more than its uncertainty: gauges swapped, flow the other way, "
-            "or wrong elevations."
-        )
-    else:
-        largest = int(np.argmax(values.friction_loss_m))
-        because = (
-            f"The largest head loss, {values.friction_loss_m[largest]:.2g} m, is less than twice its standard "
-            f"uncertainty of {values.friction_loss_standard_m[largest]:.2g} m. Take a static reading to level the gauges, "
-            "a larger flow, a longer section or finer gauges."
-        )
-    return _no_estimate(because, model, values)
-
-
-def _no_estimate(because: str, model: HeadModel | None, values: PlateauValues | None) -> Wall:
+def _no_estimate(verdict: Verdict, model: HeadModel | None, values: PlateauValues | None) -> Wall:
     """Return a wall that nothing is known of."""
     nowhere = dict.fromkeys(
         ("flow_m3_s", "velocity_m_s", "reynolds", "temperature_degc", "viscosity_m2_s", "smooth_friction_factor"),
         float("nan"),
     )
     return Wall(
-        state="no estimate",
-        because=because,
+        state=verdict.state,
+        because=verdict.because,
+        advice=verdict.advice,
         roughness_m=NOTHING,
         hazen_williams_c=NOTHING,
         friction_factor=NOTHING,

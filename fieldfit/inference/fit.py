@@ -127,7 +127,17 @@ def _least_squares(model: HeadModel, noise: Array) -> tuple[float, Array]:
     found = lmfit.minimize(
         residual, parameters, method="leastsq", scale_covar=False, Dfun=slopes, col_deriv=True, xtol=1e-12, ftol=1e-12
     )
-    return unpack(found.params)
+    return _polished(model, noise, *unpack(found.params))
+
+
+def _polished(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> tuple[float, Array]:
+    """Take two Gauss–Newton steps from where the search stopped, so that the digits do not hang on its path."""
+    for _ in range(2):
+        slopes = _jacobian(model, noise, ln_friction, u)
+        misfit = (model.readings.head_loss_m - model.predict(ln_friction, u).head_m) / noise
+        step = np.linalg.solve(slopes @ slopes.T, -slopes @ np.concatenate([misfit, u]))
+        ln_friction, u = _bounded(model, ln_friction + float(step[0])), u + step[1:]
+    return ln_friction, u
 
 
 def _bounded(model: HeadModel, ln_friction: float) -> float:

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Correlation
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY, smooth
-from fieldfit.inference.friction_curve import TURBULENT_LAW_FROM, friction_curve
+from fieldfit.inference.friction_curve import TURBULENT_LAW_FROM, friction_curve, highest_ln_friction
 from fieldfit.inference.shared_errors import SharedErrors, shared_errors
 
 Array = NDArray[np.float64]
@@ -120,8 +120,8 @@ def head_model(readings: ReachReadings, limit: Correlation) -> HeadModel:
     own noise and the shared errors of head are counted, so that it falls where the wall is known best.
     """
     ln_reynolds = np.log(reynolds_of(readings))
-    first = shared_errors(readings, ln_reynolds, float(np.mean(ln_reynolds)), limit)
-    noise = np.sqrt(readings.random_m**2 + np.sum(first.head_m**2, axis=0))
+    nothing = np.zeros_like(ln_reynolds)
+    noise = np.sqrt(readings.random_m**2 + np.sum(shared_errors(readings, limit, nothing, nothing).head_m ** 2, axis=0))
     # The expected loss, not the read one: a weight that grows with a reading's own error would bias the centre.
     area = np.pi * readings.bore.value**2 / 4.0
     expected = smooth(reynolds_of(readings)) * (readings.flow_m3_s / area) ** 2
@@ -135,4 +135,15 @@ def head_model(readings: ReachReadings, limit: Correlation) -> HeadModel:
         temperature_degc=float(np.sum(weight * readings.temperature_degc)),
         viscosity_m2_s=4.0 * flow / (np.pi * readings.bore.value * float(np.exp(centre))),
     )
-    return HeadModel(readings=readings, errors=shared_errors(readings, ln_reynolds, centre, limit), reference=reference)
+    distance = (ln_reynolds - centre) / np.log(10.0)
+    tilt = _tilt(readings, weight, reference)
+    return HeadModel(readings=readings, errors=shared_errors(readings, limit, distance, tilt), reference=reference)
+
+
+def _tilt(readings: ReachReadings, weight: Array, reference: Reference) -> Array:
+    """Return how unlike ln f moves along the curve when the wall changes, near the wall the readings suggest [-]."""
+    _, factor = friction_by_definition(readings)
+    at_smooth = float(smooth(reference.reynolds))
+    rough = max(float(weight @ factor), at_smooth * (1.0 + 1e-6))
+    at = np.minimum(np.log([rough]), highest_ln_friction(np.array([reference.reynolds])))
+    return friction_curve(at, reynolds_of(readings), np.array([reference.reynolds])).slope_parameter - 1.0

@@ -71,19 +71,19 @@ class _Collector:
         return table
 
 
-def shared_errors(readings: ReachReadings, ln_reynolds: Array, centre: float, limit: Correlation) -> SharedErrors:
+def shared_errors(readings: ReachReadings, limit: Correlation, distance: Array, tilt: Array) -> SharedErrors:
     """List the shared errors of a reach.
 
     Parameters
     ----------
     readings : ReachReadings
         What the plateaus say; K readings.
-    ln_reynolds : (K,) array
-        ln Re of each reading [-].
-    centre : float
-        ln Re about which the correlation's error is expanded [-].
     limit : Correlation
         How far friction correlations can be trusted.
+    distance : (K,) array
+        Decades of Re from the reference [-].
+    tilt : (K,) array
+        d ln f / d ln f at the reference, less one, along the curve near the wall's [-].
 
     Returns
     -------
@@ -94,7 +94,7 @@ def shared_errors(readings: ReachReadings, ln_reynolds: Array, centre: float, li
     _add_meter(found, readings)
     _add_gauges(found, readings)
     _add_pipe(found, readings)
-    _add_shape(found, (ln_reynolds - centre) / (limit.decades * np.log(10.0)), limit.standard)
+    _add_shape(found, limit, distance, tilt)
     return SharedErrors(
         names=tuple(found.names),
         shapes=tuple(found.shapes),
@@ -173,13 +173,16 @@ def _add_pipe(found: _Collector, readings: ReachReadings) -> None:
     found.add("viscosity and temperature", "normal", ln_viscosity=np.asarray(readings.viscosity_standard))
 
 
-def _add_shape(found: _Collector, distance: Array, standard: float) -> None:
-    """Add how the correlation's error changes with Re about the centre: a slope and a bend.
+def _add_shape(found: _Collector, limit: Correlation, distance: Array, tilt: Array) -> None:
+    """Add how the correlation may be wrong in shape about the reference: a slope, a bend, and a neighbour's curve.
 
-    They are the leading terms of a squared-exponential process in ln Re; its level, one at the centre, is left
-    out. The readings could only learn it from the curve's shape, which is just what a correlation does not
-    promise, so it is added to the result afterwards and no number of readings shrinks it.
+    Slope and bend are the leading terms of a squared-exponential process in log Re. Its level, one at the
+    reference, is left out: the readings could only learn it from the curve's shape, which is just what a
+    correlation does not promise, so it is added to the result afterwards and no number of readings shrinks it. But
+    a wall whose f is off by the level follows the shape of another wall's curve; that is the third term.
     """
-    decay = standard * np.exp(-0.5 * distance**2)
+    position = distance / limit.decades
+    decay = limit.standard * np.exp(-0.5 * position**2)
     for order in SHAPE_ORDERS:
-        found.add(SHAPE, "normal", ln_friction=decay * distance**order / np.sqrt(float(order)))
+        found.add(SHAPE, "normal", ln_friction=decay * position**order / np.sqrt(float(order)))
+    found.add(SHAPE, "normal", ln_friction=limit.standard * tilt)

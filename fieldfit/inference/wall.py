@@ -99,6 +99,8 @@ class Wall:
     """Measured, upper limit, or no estimate."""
     because: str
     """Why that state, as a sentence."""
+    advice: str
+    """What to do for an estimate, as a sentence; empty when there is one."""
     roughness_m: Band
     """Equivalent sand-grain roughness by Colebrook–White [m]."""
     hazen_williams_c: Band

@@ -46,7 +46,6 @@ def _of_reach(reach: ReachFinding, section: Section) -> Iterator[Caution]:
     if reach.wall.state == "no estimate":
         yield Caution(about="no estimate", text=reach.wall.because)
     yield from _statics(reach.readings)
-    yield from _gauge_range(reach.readings)
     yield from _fit(reach)
     yield from _coverage(reach)
     yield from _against_new(reach, section)
@@ -76,18 +75,6 @@ def _statics(readings: ReachReadings) -> Iterator[Caution]:
             text=f"The gauges drifted by {levelling.drift_m:+.3f} m against each other between the first and the last "
             f"static; the smallest head loss used is {smallest:.2f} m. The drift was shared out over time.",
         )
-
-
-def _gauge_range(readings: ReachReadings) -> Iterator[Caution]:
-    """Check that no gauge was read beyond its range."""
-    for tap, pressure in zip((readings.upstream, readings.downstream), readings.pressure_pa, strict=True):
-        span, highest = tap.accuracy.span, float(np.max(pressure, initial=0.0))
-        if span is not None and highest > span:
-            yield Caution(
-                about="gauge",
-                text=f"Gauge '{tap.gauge or tap.column}' was read at {highest / 1e5:.2f} bar, beyond its range of "
-                f"{span / 1e5:.2f} bar: its stated accuracy does not hold there.",
-            )
 
 
 def _fit(reach: ReachFinding) -> Iterator[Caution]:
@@ -165,6 +152,12 @@ def _of_log(section: Section, log: Log, screening: Screening, plateaus: Plateaus
     if aside > SET_ASIDE_SHARE * rows:
         reasons = ", ".join(f"{why} {count}" for why, count in screening.counts)
         yield Caution(about="log", text=f"{aside} of {rows} rows were set aside ({reasons}).")
+    if log.kind == "logger" and len(plateaus.rows) and np.max(plateaus.rows) == 1:
+        yield Caution(
+            about="log",
+            text="No stretch of the log is steady over enough rows, and the rows are few and far apart: each was taken as a "
+            "reading of its own, as on a hand sheet.",
+        )
     if section.meter.senses == "velocity":
         yield Caution(
             about="meter",

@@ -68,6 +68,6 @@ class Finding:
 
     def _repr_html_(self) -> str:
         """Show the page in a notebook."""
-        from fieldfit.report.page import page
+        from fieldfit.report.page import page_in_notebook
 
-        return page(self)
+        return page_in_notebook(self)

@@ -55,7 +55,7 @@ def _reach(reach: ReachFinding) -> list[str]:
     lines = _line("state", f"{wall.state}: {verdict[0].lower()}{verdict[1:]}" if new else wall.state)
     if wall.state == "no estimate":
         lines += _line("why", words.sentence(wall.because))
-        return lines + _line("next", words.next_step(reach))
+        return lines + _line("next", words.sentence(wall.advice))
     lines += _roughness(reach)
     c = wall.hazen_williams_c
     if c.best is not None and c.measurement is not None and c.with_correlation is not None:

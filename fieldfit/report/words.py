@@ -2,10 +2,7 @@
 
 from __future__ import annotations
 
-import math
-
 from fieldfit.field.readings import ReachReadings
-from fieldfit.hydraulics.regime import TURBULENT_LIMIT
 from fieldfit.inference.wall import Wall
 from fieldfit.report.digits import COVERAGE, decimals, fixed, limit, litres, percent, span, value_with_band
 from fieldfit.report.finding import ReachFinding
@@ -43,27 +40,14 @@ def answer(reach: ReachFinding) -> str:
         what to do next.
     """
     if reach.wall.state == "no estimate":
-        parts = [f"{_place(reach.readings)} gives no roughness.", sentence(reach.wall.because), next_step(reach)]
+        parts = [
+            f"{_place(reach.readings)} gives no roughness.",
+            sentence(reach.wall.because),
+            sentence(reach.wall.advice),
+        ]
         return " ".join(part for part in parts if part)
     told = [_wall_words(reach), _c_words(reach), _new_words(reach), _limit_words(reach.wall)]
     return " ".join(part for part in told if part)
-
-
-def next_step(reach: ReachFinding) -> str:
-    """Return what to do so that the next test gives an estimate, where the reason itself does not say it all."""
-    readings, wall = reach.readings, reach.wall
-    why = " ".join([wall.because, *(reason for _, reason in readings.set_aside)]).casefold()
-    if "not a roughness" in why:
-        return "A third tap between these two would show where the head goes."
-    if "smooth pipe" in why:
-        return "Then test again, with a static before and after."
-    if "negative" in why:
-        return "Put the taps in the order the water runs, or level the gauges with a static, and assess again."
-    if "laminar" in why or "critical" in why:
-        flow = TURBULENT_LIMIT * math.pi / 4.0 * readings.bore.value * wall.viscosity_m2_s
-        above = f", above {litres(flow)} here" if math.isfinite(flow) else ""
-        return f"Only turbulent flow feels the wall{above}; several times that flow tells more."
-    return ""
 
 
 def sentence(text: str) -> str:

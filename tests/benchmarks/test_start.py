@@ -31,7 +31,11 @@ def seconds(*words, folder):
     for _ in range(RUNS):
         start = time.perf_counter()
         done = subprocess.run(
-            [sys.executable, *words], cwd=folder, capture_output=True, env={**os.environ, "PYTHONHASHSEED": "0"}, check=False
+            [sys.executable, *words],
+            cwd=folder,
+            capture_output=True,
+            env={**os.environ, "PYTHONHASHSEED": "0"},
+            check=False,
         )
         best = min(best, time.perf_counter() - start)
         assert done.returncode == 0, done.stderr

@@ -12,7 +12,18 @@ from fieldfit.errors import InputError
 from fieldfit.field.log import Log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
 from fieldfit.field.reaches import reach_readings
-from fieldfit.field.screens import CRITICAL, LAMINAR, MISSING, NEGATIVE, OUTLIER, REVERSED, UNRESOLVED, UNSTEADY
+from fieldfit.field.screens import (
+    CRITICAL,
+    LAMINAR,
+    MISSING,
+    NEGATIVE,
+    OUTLIER,
+    RANGE,
+    REVERSED,
+    STUCK,
+    UNRESOLVED,
+    UNSTEADY,
+)
 from fieldfit.field.section import Fitting, Meter, Section, Tap
 from fieldfit.field.uncertain import Accuracy, Uncertain
 from fieldfit.hydraulics.liquids import Liquid
@@ -239,3 +250,57 @@ def test_plateaus_can_be_set_aside_by_number():
     fewer = set_plateaus_aside(screening, {2: LAMINAR})
     assert dict(fewer.counts)[LAMINAR] == int(np.count_nonzero(screening.plateau == 2))
     assert fewer.used == screening.used - dict(fewer.counts)[LAMINAR]
+
+
+def noisy_staircase(seed=6):
+    rng = np.random.default_rng(seed)
+    flow, head = staircase(rows=60)
+    log = log_of(flow, head)
+    return replace(log, pressure_pa=np.rint(log.pressure_pa + rng.normal(0.0, 300.0, log.pressure_pa.shape)))
+
+
+def test_a_stuck_gauge_is_found_and_a_quiet_static_is_not():
+    log = noisy_staircase()
+    log.pressure_pa[0, 100:130] = log.pressure_pa[0, 100]
+    log.pressure_pa[1, :50] = log.pressure_pa[1, 0]
+    screening, _, _ = read(log, section_of())
+    assert set(screening.reason[101:130]) == {STUCK}
+    assert screening.plateau[100] > 0
+    assert STUCK not in set(screening.reason[:50])
+
+
+def test_readings_beyond_the_gauge_or_below_vacuum_are_out_of_range():
+    log = noisy_staircase()
+    log.pressure_pa[0, 100], log.pressure_pa[1, 130] = 1.2e6, -2e5
+    screening, _, _ = read(log, section_of())
+    assert screening.reason[100] == screening.reason[130] == RANGE
+
+
+def test_the_tail_of_a_valve_move_is_left_out():
+    """What is left of a slow approach moves the flow by well under its noise."""
+    rng = np.random.default_rng(9)
+    time = np.arange(120.0)
+    velocity = 2.0 + 0.5 * np.exp(-time / 8.0)
+    velocity = np.concatenate([np.zeros(30), velocity]) * (1.0 + rng.normal(0.0, 0.002, 150))
+    screening, plateaus, _ = read(log_of(velocity * AREA, 1.5 * velocity**2), section_of())
+    assert plateaus.static[0]
+    kept = np.flatnonzero(screening.plateau == plateaus.number[-1]) - 30
+    assert len(kept) > 60
+    assert 0.5 * np.exp(-kept[0] / 8.0) < 0.02
+    assert set(screening.reason[30:38]) == {UNSTEADY}
+
+
+def test_a_sheet_with_a_clock_is_still_a_sheet():
+    flow, head = staircase(rows=2)
+    screening, _, readings = read(log_of(flow, head, seconds=120.0), section_of())
+    assert screening.used == len(flow)
+    np.testing.assert_allclose(readings.head_loss_m, np.repeat([1.5, 6.0, 13.5], 2), rtol=1e-9)
+
+
+def test_a_short_fast_log_without_plateaus_is_not_a_sheet():
+    velocity = np.linspace(0.5, 3.0, 60)
+    screening, _, _ = read(
+        log_of(velocity * AREA, 1.5 * velocity**2),
+        section_of(taps=tuple(replace(tap, elevation=Uncertain(value=0.0, standard=0.1)) for tap in section_of().taps)),
+    )
+    assert screening.used == 0

@@ -103,6 +103,20 @@ def test_nothing_left_says_why(reason):
     wall = estimate(replace(readings, **nothing, set_aside=((1, reason),)), LIMIT)
     assert wall.state == "no estimate"
     assert reason in wall.because
+    assert "turbulent flow feels the wall, above 0.16 L/s" in wall.advice
+
+
+def test_each_reason_gets_its_own_advice():
+    told = [
+        wall_of(head=make_readings(roughness=0.0).head_loss_m * 0.5),
+        wall_of(roughness=0.08 * 0.0525),
+        wall_of(head=-make_readings().head_loss_m),
+        wall_of(levelled=False, gauge_pa=60_000.0),
+    ]
+    assert {wall.state for wall in told} == {"no estimate"}
+    assert len({wall.advice for wall in told}) == len(told)
+    assert all(wall.advice for wall in told)
+    assert wall_of().advice == ""
 
 
 def test_budget_lists_the_correlation_and_adds_up():

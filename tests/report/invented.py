@@ -232,6 +232,7 @@ def invented_readings(pipe: Pipe, section: Section, plateaus: Plateaus, reach: i
         density_kg_m3=frozen(np.full(count, DENSITY)),
         viscosity_m2_s=frozen(np.full(count, VISCOSITY)),
         viscosity_standard=0.013,
+        turbulent_from_m3_s=1.9e-4,
         set_aside=((int(plateaus.number[flowing][0]), "critical zone"),) if pipe.repeat > 1 else (),
     )
 
@@ -292,6 +293,7 @@ def invented_wall(pipe: Pipe, readings: ReachReadings) -> Wall:
         because="The readings lie so near a smooth wall that no roughness can be told from zero."
         if smooth_wall
         else "The friction factor stands clear of the smooth wall's.",
+        advice="",
         roughness_m=Band(best=None, measurement=(0.0, walls[0.016][1]), with_correlation=(0.0, walls[0.0525][1]))
         if smooth_wall
         else Band(best=pipe.roughness_m, measurement=walls[0.016], with_correlation=walls[0.0525]),
@@ -417,6 +419,7 @@ def no_estimate(because: str = "Every reading is laminar, and laminar flow does 
         reach.wall,
         state="no estimate",
         because=because,
+        advice="Only turbulent flow feels the wall, above 0.19 L/s here; several times that tells more.",
         roughness_m=nothing,
         hazen_williams_c=nothing,
         friction_factor=nothing,
