@@ -120,8 +120,24 @@ def plus_minus(value: float, standard: float) -> str:
 
 
 def known(quantity: Uncertain, scale: float = 1.0) -> str:
-    """Return a stated quantity with its 95 % half-width, in a unit `scale` times smaller than SI."""
-    return plus_minus(quantity.value * scale, quantity.standard * scale)
+    """Return a stated quantity with its limit as the user gave it, in a unit `scale` times smaller than SI.
+
+    A rectangular error is given by its limit, a normal one by its 95 % half-width.
+
+    Examples
+    --------
+    >>> known(Uncertain(value=0.0525, standard=0.0002625 / 3**0.5), 1e3)
+    '52.50 ± 0.26'
+    >>> known(Uncertain(value=38.2, standard=0.02 / 3**0.5)), known(Uncertain(value=3.0, standard=0.0))
+    ('38.20 ± 0.02', '3')
+    """
+    if quantity.standard <= 0.0:
+        return plus_minus(quantity.value * scale, 0.0)
+    half_width = quantity.standard * scale * (math.sqrt(3.0) if quantity.shape == "rectangular" else COVERAGE)
+    places = -math.floor(math.log10(half_width))
+    if abs(round(half_width, places) / half_width - 1.0) > 0.05:
+        places += 1
+    return f"{fixed(quantity.value * scale, places)} ± {fixed(half_width, places)}"
 
 
 def limit(value: float) -> str:

@@ -224,7 +224,7 @@ def inputs(section: Section) -> tuple[Row, ...]:
         (
             "Temperature",
             ("from the log" if section.temperature is None else f"{fixed(section.temperature.value, 1)} °C")
-            + f", good to ±{significant(COVERAGE * section.temperature_standard, 2)} K",
+            + f", good to ±{significant(math.sqrt(3.0) * section.temperature_standard, 2)} K",
         ),
         ("Flow meter", f"{_column(meter.column, meter.serial)}, {meter.accuracy.text}; it senses {meter.senses}"),
     ]

@@ -16,7 +16,7 @@ def test_an_answer_takes_about_a_dozen_lines(make):
 def test_it_says_what_the_engineer_needs():
     text = summary(plant_line())
     for part in (
-        "Kiln cooling supply (carbon steel, bore 52.50 ± 0.21 mm)",
+        "Kiln cooling supply (carbon steel, bore 52.50 ± 0.18 mm)",
         "measured: worse than new",
         "0.31 mm (0.28 to 0.35 mm)",
         "0.21 to 0.44 mm",
