@@ -170,6 +170,23 @@ def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
     return float(misfit @ misfit + u @ u)
 
 
+def covariance(fit: Fit) -> Array:
+    """Return the covariance of ln f at the reference and of the shared errors, (1 + M, 1 + M), at the best point.
+
+    Parameters
+    ----------
+    fit : Fit
+        A fitted reach.
+
+    Returns
+    -------
+    Array
+        The wall first, then the shared errors in their order.
+    """
+    slopes = _jacobian(fit.model, fit.random_m, fit.ln_friction, fit.u)
+    return np.asarray(np.linalg.inv(slopes @ slopes.T))
+
+
 def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> tuple[Array, float]:
     """Return each error's share in the variance of ln f, noise last, and the standard uncertainty.
 

@@ -1,0 +1,163 @@
+"""Head loss and C of a fitted reach at another flow and temperature, with what the readings say of them.
+
+A head loss at a flow that was tested is a measurement: bore, length and friction factor may each be uncertain, yet
+their errors cancel in it. So the uncertainty is taken from the fit's whole covariance, not put together from parts.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.field.section import Correlation
+from fieldfit.hydraulics.friction import STANDARD_GRAVITY
+from fieldfit.hydraulics.hazen_williams import c_from_head_loss
+from fieldfit.inference.fit import Fit, covariance
+from fieldfit.inference.friction_curve import friction_curve
+from fieldfit.inference.head_model import reynolds_of
+
+Array = NDArray[np.float64]
+
+C_BY_LOSS = -0.54
+"""d ln C / d ln of the head loss per length, by the exponents of Hazen–Williams."""
+C_BY_BORE = -2.63
+"""d ln C / d ln bore at a given head loss and flow."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Duty:
+    """What the pipe is asked for."""
+
+    flow_m3_s: float
+    """Flow [m³/s]."""
+    viscosity_m2_s: float
+    """Kinematic viscosity there [m²/s]."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Predicted:
+    """A value that is known by its logarithm."""
+
+    value: float
+    """Best value [SI]."""
+    measurement: float
+    """Relative standard uncertainty from the measurement alone [-]."""
+    extrapolation: float
+    """Relative standard uncertainty added because the flow lies outside those tested [-]; 0 within them."""
+
+    @property
+    def standard(self) -> float:
+        """Relative standard uncertainty, both together [-]."""
+        return float(np.hypot(self.measurement, self.extrapolation))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Prediction:
+    """What a fitted reach does at a duty."""
+
+    friction_loss_m: Predicted
+    """Head loss to friction [m]."""
+    head_loss_m: Predicted
+    """Head loss with the fittings [m]."""
+    hazen_williams_c: Predicted
+    """C by the true bore, which is the as-new bore within its limit [-]."""
+    nominal_c: Predicted
+    """C by the as-new bore taken as exact: the bore is then a convention and adds nothing [-]."""
+    reynolds: float
+    """Reynolds number [-]."""
+    decades_outside: float
+    """How far the Reynolds number lies outside those tested [decades]; 0 within them."""
+
+
+def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
+    """Say what a fitted reach does at a flow.
+
+    Within the flows tested the fit interpolates and the correlation's level does not enter. Outside them the
+    correlation carries the curve on: its error is then the difference of a squared-exponential process between the
+    end of the tested range and the duty.
+
+    Parameters
+    ----------
+    fit : Fit
+        The fitted reach.
+    duty : Duty
+        Flow and viscosity asked for.
+    limit : Correlation
+        How far friction correlations can be trusted.
+
+    Returns
+    -------
+    Prediction
+    """
+    readings, errors = fit.model.readings, fit.model.errors
+    bore = readings.bore.value * float(np.exp(fit.u @ errors.ln_bore))
+    length = readings.length.value * float(np.exp(fit.u @ errors.ln_length))
+    fitting_k = readings.fitting_k.value + float(fit.u @ errors.fitting_k)
+    reynolds = 4.0 * duty.flow_m3_s / (np.pi * bore * duty.viscosity_m2_s)
+    curve = friction_curve(np.array([fit.ln_friction]), np.array([reynolds]), np.array([fit.model.reference.reynolds]))
+    shape = _shape_at(fit, reynolds)
+    velocity_head = 8.0 * duty.flow_m3_s**2 / (np.pi**2 * STANDARD_GRAVITY * bore**4)
+    friction_m = float(curve.friction_factor[0] * np.exp(fit.u @ shape)) * length / bore * velocity_head
+    fittings_m = fitting_k * velocity_head
+    by_wall = float(curve.slope_parameter[0])
+    by_error = shape - errors.ln_bore * (5.0 + float(curve.slope_reynolds[0])) + errors.ln_length
+    share = friction_m / (friction_m + fittings_m)
+    whole_by_error = share * by_error + (1.0 - share) * (-4.0 * errors.ln_bore)
+    whole_by_error = whole_by_error + errors.fitting_k * velocity_head / (friction_m + fittings_m)
+    spread = _Spread(covariance(fit), _outside(fit, reynolds), limit)
+    c_by_error = C_BY_LOSS * (by_error - errors.ln_length)
+    return Prediction(
+        friction_loss_m=spread.of(friction_m, by_wall, by_error),
+        head_loss_m=spread.of(friction_m + fittings_m, share * by_wall, whole_by_error),
+        hazen_williams_c=spread.of(
+            float(c_from_head_loss(duty.flow_m3_s, friction_m, bore, length)),
+            C_BY_LOSS * by_wall,
+            c_by_error + C_BY_BORE * errors.ln_bore,
+        ),
+        nominal_c=spread.of(
+            float(c_from_head_loss(duty.flow_m3_s, friction_m, readings.bore.value, length)),
+            C_BY_LOSS * by_wall,
+            c_by_error,
+        ),
+        reynolds=reynolds,
+        decades_outside=spread.decades_outside,
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Spread:
+    """Turns slopes into uncertainties."""
+
+    covariance: Array
+    decades_outside: float
+    limit: Correlation
+
+    def of(self, value: float, by_wall: float, by_error: Array) -> Predicted:
+        """Return a value with its uncertainties, from the slopes of its logarithm."""
+        slope = np.append(by_wall, by_error)
+        outside = self.decades_outside / self.limit.decades
+        drift = self.limit.standard * float(np.sqrt(2.0 * (1.0 - np.exp(-0.5 * outside**2))))
+        return Predicted(
+            value=value,
+            measurement=float(np.sqrt(slope @ self.covariance @ slope)),
+            extrapolation=abs(by_wall) * drift,
+        )
+
+
+def _shape_at(fit: Fit, reynolds: float) -> Array:
+    """Return what one standard deviation of each shared error does to ln f at a Reynolds number, (M,) [-]."""
+    tested = np.log(reynolds_of(fit.model.readings))
+    order = np.argsort(tested)
+    return np.array(
+        [np.interp(np.log(reynolds), tested[order], row[order]) for row in fit.model.errors.ln_friction]
+    ).reshape(len(fit.u))
+
+
+def _outside(fit: Fit, reynolds: float) -> float:
+    """Return how far a Reynolds number lies outside those tested [decades]."""
+    tested = np.log10(reynolds_of(fit.model.readings))
+    return max(
+        0.0, float(np.min(tested)) - float(np.log10(reynolds)), float(np.log10(reynolds)) - float(np.max(tested))
+    )
