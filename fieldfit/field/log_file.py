@@ -3,20 +3,24 @@
 from __future__ import annotations
 
 import itertools
-from collections.abc import Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
+from types import MappingProxyType
 from typing import TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.channels import Channels
 from fieldfit.field.clock import Clock, count_from_start, read_clock, repeated_or_backwards
 from fieldfit.field.log import Log
 from fieldfit.field.log_headings import (
     Column,
     Headings,
+    Wanted,
+    find_any_headings,
     find_headings,
     find_temperature,
     resolve_unit,
@@ -44,7 +48,8 @@ Kind = TypeVar("Kind", bound=np.generic)
 class _Columns:
     """The columns of a log that are used."""
 
-    instruments: tuple[Column, ...]
+    instruments: Mapping[str, Column]
+    """Each instrument's, by its name in the section file."""
     temperature: Column | None
     time: TimeColumn | None
 
@@ -53,7 +58,7 @@ class _Columns:
         """Places of the columns that hold numbers."""
         others = [self.temperature] if self.temperature else []
         counted = [self.time.position] if self.time and self.time.unit else []
-        return (*(column.position for column in (*self.instruments, *others)), *counted)
+        return (*(column.position for column in (*self.instruments.values(), *others)), *counted)
 
 
 def read_log(path: str | Path, section: Section) -> Log:
@@ -82,14 +87,42 @@ def read_log(path: str | Path, section: Section) -> Log:
     InputError
         With file, line and column, what was seen, and what to do.
     """
-    source = log_source(Path(path))
+    return _log(_read(Path(path), section, find_headings), section)
+
+
+def read_channels(path: str | Path, section: Section) -> Channels:
+    """Read a file that holds some of a section's columns, one or more, such as the file of a single logger.
+
+    Parameters
+    ----------
+    path : str or Path
+        The file, in any form that `read_log` understands.
+    section : Section
+        Names the columns.
+
+    Returns
+    -------
+    Channels
+        N rows in the file's order. A row's reason counts the columns of this file only.
+
+    Raises
+    ------
+    InputError
+        With file, line and column, what was seen, and what to do.
+    """
+    return _read(Path(path), section, find_any_headings)
+
+
+def _read(path: Path, section: Section, find: Callable[[Sequence[str], Sequence[Wanted], str], Headings]) -> Channels:
+    """Read the columns that the headings of a file name."""
+    source = log_source(path)
     said: list[str] = []
     try:
         lines = _first_lines(source)
     except UnicodeError:
         raise source.undecodable() from None
-    headings = find_headings(lines[:LONGEST_PREAMBLE], wanted_columns(section), source.path.name)
-    columns = _columns(headings, section, lines, said, source.path.name)
+    headings = find(lines[:LONGEST_PREAMBLE], wanted_columns(section), source.path.name)
+    columns = _columns(headings, lines, said, source.path.name)
     form = _form(headings, columns, lines, source.path.name)
     rows, decimal = read_rows(source, form, said)
     _say_form(headings, decimal, said)
@@ -98,7 +131,7 @@ def read_log(path: str | Path, section: Section) -> Log:
             "no rows stand below the headings", "Export the log again.", f"{source.path.name}:{headings.line}"
         )
     clock = _clock(rows, columns, source.path.name, said)
-    return _log(source, rows, columns, clock, said)
+    return _channels(source, rows, columns, clock, said)
 
 
 def _first_lines(source: LogSource) -> list[str]:
@@ -113,20 +146,20 @@ def _first_lines(source: LogSource) -> list[str]:
     return lines
 
 
-def _columns(headings: Headings, section: Section, lines: Sequence[str], said: list[str], file: str) -> _Columns:
+def _columns(headings: Headings, lines: Sequence[str], said: list[str], file: str) -> _Columns:
     """Return the columns that are used, with their units."""
     where = f"{file}:{headings.line}"
     below = sample_rows(lines, headings)
-    instruments = [
-        Column(
+    instruments = {
+        wanted.column: Column(
             heading=headings.texts[place],
             position=place,
             unit=resolve_unit(wanted, headings.texts[place], its_unit, said, where),
         )
-        for wanted, (place, its_unit) in zip(wanted_columns(section), headings.found, strict=True)
-    ]
+        for wanted, (place, its_unit) in zip(headings.wanted, headings.found, strict=True)
+    }
     return _Columns(
-        instruments=tuple(instruments),
+        instruments=instruments,
         temperature=find_temperature(headings, said, where),
         time=find_time(headings, below[0][1] if below else (), said, where),
     )
@@ -145,7 +178,7 @@ def _form(headings: Headings, columns: _Columns, lines: Sequence[str], file: str
                 where = f"{file}:{number}, column '{shown(headings.texts[place])}'"
                 raise InputError(f"'{row[place]}' is not a number", "Name the right column in the section file.", where)
     widest = max((len(row) for _, row in samples), default=names)
-    if widest <= max(column.position for column in columns.instruments):
+    if widest <= max(column.position for column in columns.instruments.values()):
         advice = "Headings that hold a comma must stand in quotation marks."
         raise InputError(f"{widest} fields stand under {names} headings", advice, f"{file}:{samples[0][0]}")
     cells = [row[place] for _, row in samples for place in columns.of_numbers if place < len(row)]
@@ -183,35 +216,54 @@ def _clock(rows: Rows, columns: _Columns, file: str, said: list[str]) -> Clock:
     return read_clock(rows.texts[time.position], dates, rows.line, (file, time.heading), said)
 
 
-def _log(source: LogSource, rows: Rows, columns: _Columns, clock: Clock, said: list[str]) -> Log:
-    """Put the log together in SI units."""
+def _channels(source: LogSource, rows: Rows, columns: _Columns, clock: Clock, said: list[str]) -> Channels:
+    """Put what was read together in SI units."""
     file = source.path.name
-    raw = [rows.numbers[column.position] for column in columns.instruments]
-    for column, values in zip(columns.instruments, raw, strict=True):
-        if np.all(np.isnan(values)):
+    values, steps = {}, {}
+    for name, column in columns.instruments.items():
+        raw = rows.numbers[column.position]
+        if np.all(np.isnan(raw)):
             where = f"{file}, column '{shown(column.heading)}'"
             raise InputError("no row has a value", "Check that the section file names the right column.", where)
-    factors = [column.unit.factor for column in columns.instruments]
-    flow, *pressures = (values * factor for values, factor in zip(raw, factors, strict=True))
-    steps = [written_step(values) * factor for values, factor in zip(raw, factors, strict=True)]
-    missing = np.any(np.isnan(raw), axis=0) | np.isnan(clock.time_s)
+        values[name] = _frozen(raw * column.unit.factor)
+        steps[name] = written_step(raw) * column.unit.factor
+    missing = np.any([np.isnan(column) for column in (clock.time_s, *values.values())], axis=0)
     reason = np.zeros(rows.line.size, dtype=f"<U{max(len(MISSING), len(CLOCK))}")
     reason[repeated_or_backwards(clock.time_s)] = CLOCK
     reason[missing] = MISSING
-    return Log(
+    return Channels(
         file=file,
         sha256=source.sha256,
         kind="sheet" if columns.time is None else "logger",
         line=_frozen(rows.line),
         start=clock.start,
         time_s=_frozen(clock.time_s),
-        flow_m3_s=_frozen(flow),
-        pressure_pa=_frozen(np.array(pressures)),
+        values=MappingProxyType(values),
+        steps=MappingProxyType(steps),
         temperature_degc=_temperature(rows, columns.temperature, said),
-        flow_step_m3_s=steps[0],
-        pressure_step_pa=_frozen(np.array(steps[1:])),
         reason=_frozen(reason),
         assumed=tuple(dict.fromkeys(said)),
+    )
+
+
+def _log(channels: Channels, section: Section) -> Log:
+    """Return the channels of a file that holds all of a section's columns as a log."""
+    flow, *pressures = (channels.values[wanted.column] for wanted in wanted_columns(section))
+    flow_step, *steps = (channels.steps[wanted.column] for wanted in wanted_columns(section))
+    return Log(
+        file=channels.file,
+        sha256=channels.sha256,
+        kind=channels.kind,
+        line=channels.line,
+        start=channels.start,
+        time_s=channels.time_s,
+        flow_m3_s=flow,
+        pressure_pa=_frozen(np.array(pressures)),
+        temperature_degc=channels.temperature_degc,
+        flow_step_m3_s=flow_step,
+        pressure_step_pa=_frozen(np.array(steps)),
+        reason=channels.reason,
+        assumed=channels.assumed,
     )
 
 

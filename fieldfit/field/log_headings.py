@@ -22,6 +22,8 @@ TEMPERATURE_NAMES = (
     "temp",
 )
 """Headings of the liquid's temperature, the surest first."""
+CLOCK_WORDS = ("time", "date", "clock", "elapsed", "timestamp")
+"""What the heading of a clock begins with."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -59,7 +61,9 @@ class Headings:
     texts: tuple[str, ...]
     """Every heading."""
     found: tuple[tuple[int, str | None], ...]
-    """Place and unit, as the heading says, of each wanted column."""
+    """Place and unit, as the heading says, of each column found."""
+    wanted: tuple[Wanted, ...] = ()
+    """The columns found, in the same order."""
 
 
 def wanted_columns(section: Section) -> tuple[Wanted, ...]:
@@ -101,11 +105,52 @@ def find_headings(lines: Sequence[str], wanted: Sequence[Wanted], file: str) -> 
             places = [_places(texts, column) for column in wanted]
             if all(places):
                 found = [_only(place, texts, f"{file}:{number}") for place in places]
-                return Headings(line=number, separator=separator, texts=texts, found=tuple(found))
+                return Headings(line=number, separator=separator, texts=texts, found=tuple(found), wanted=tuple(wanted))
             named = sum(1 for place in places if place)
             if named > closest[0]:
                 closest = (named, number, texts)
     raise _not_found(closest, lines, wanted, file)
+
+
+def find_any_headings(lines: Sequence[str], wanted: Sequence[Wanted], file: str) -> Headings:
+    """Return the line that names most of the wanted columns, one or more; the surest and then the first of several.
+
+    A line is surer when it has a clock, and when units stand with the names.
+
+    Parameters
+    ----------
+    lines : sequence of str
+        The log's first lines.
+    wanted : sequence of Wanted
+        Columns to look for.
+    file : str
+        Name of the log, for errors.
+
+    Raises
+    ------
+    InputError
+        When no line names any of them, or two headings fit one column.
+
+    Examples
+    --------
+    >>> columns = [Wanted(column=name, dimension="pressure", unit=None) for name in ("P1", "P2")]
+    >>> find_any_headings(["P2, north end", "time,P2 [kPa]"], columns, "log.csv").found
+    ((1, 'kPa'),)
+    """
+    best: tuple[tuple[int, bool, int], Headings] | None = None
+    for number, line in enumerate(lines, start=1):
+        for separator in SEPARATORS:
+            texts = fields(line, separator)
+            places = {column: _places(texts, column) for column in wanted}
+            named = {column: its_places for column, its_places in places.items() if its_places}
+            clocked = any(_fold(text).startswith(CLOCK_WORDS) for text in texts)
+            score = (len(named), clocked, sum(its_places[0][1] is not None for its_places in named.values()))
+            if named and (best is None or score > best[0]):
+                found = tuple(_only(its_places, texts, f"{file}:{number}") for its_places in named.values())
+                best = score, Headings(line=number, separator=separator, texts=texts, found=found, wanted=tuple(named))
+    if best is None:
+        raise _not_found((0, 0, ()), lines, wanted, file)
+    return best[1]
 
 
 def fields(line: str, separator: str) -> tuple[str, ...]:

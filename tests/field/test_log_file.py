@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from fieldfit.errors import InputError
-from fieldfit.field.log_file import read_log
+from fieldfit.field.log_file import read_channels, read_log
 from fieldfit.field.log_rows import MISSING_MARKS
 from fieldfit.field.section_file import read_section
 
@@ -336,3 +336,18 @@ def test_text_in_a_number_is_placed_far_down_too(read):
     rows = "".join(f"{number}.5,412,400\n" for number in range(300))
     with pytest.raises(InputError, match=r"log\.csv:302, column 'upstream \[kPa\]': 'O12' is not a number"):
         read("flow [L/s],upstream [kPa],downstream [kPa]\n" + rows + "1,O12,400\n")
+
+
+def test_a_file_may_hold_some_of_the_columns(tmp_path):
+    path = tmp_path / "gauge.csv"
+    path.write_text("Logger of downstream, north end\ntime,downstream [bar]\n2026-05-12T08:00:00,4.003\n")
+    section = read_section(Path(__file__).parent / "bad" / "section.toml")
+    channels = read_channels(path, section)
+    assert {name: values.tolist() for name, values in channels.values.items()} == {"downstream": [400.3e3]}
+    assert dict(channels.steps) == {"downstream": pytest.approx(100.0)}
+    assert (channels.start, channels.line.tolist()) == (dt.datetime(2026, 5, 12, 8), [3])
+    with pytest.raises(InputError, match="no heading 'flow'"):
+        read_log(path, section)
+    path.write_text("time,level [m]\n2026-05-12T08:00:00,4.003\n")
+    with pytest.raises(InputError, match="no heading 'flow'"):
+        read_channels(path, section)
