@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+import contextlib
+import io
 import sys
+from collections.abc import Iterator
 from pathlib import Path
 from typing import Annotated
 
@@ -16,10 +19,13 @@ app = typer.Typer(
     no_args_is_help=True,
     pretty_exceptions_enable=False,
     help="From field readings of flow and pressure to what has become of a pipe.",
+    epilog="Example: fieldfit assess sample_data/kiln_cooling",
 )
 
 NO_ANSWER = 1
 BAD_INPUT = 2
+INTERRUPTED = 130
+"""What typer ends with after Ctrl-C."""
 
 
 def _show_version(wanted: bool) -> None:
@@ -51,9 +57,11 @@ def assess(
     from fieldfit.report.summary import summary
 
     finding = run(section, *(logs or ()))
-    written = write_reports(finding, out)
+    with _writing("--out", out):
+        written = write_reports(finding, out)
     if json is not None:
-        written = (*written, write_json(finding, json))
+        with _writing("--json", json):
+            written = (*written, write_json(finding, json))
     typer.echo(summary(finding))
     for path in written:
         typer.echo(f"Written: {path}", err=True)
@@ -70,7 +78,18 @@ def start(
 
     path = write_blank_section(folder)
     typer.echo(f"Written: {path}")
-    typer.echo("Fill it in, put the log beside it, then run: fieldfit assess " + str(folder))
+    called = f'"{folder}"' if " " in str(folder) else str(folder)
+    typer.echo(f"Fill it in, put the log beside it, then run: fieldfit assess {called}")
+
+
+@contextlib.contextmanager
+def _writing(option: str, place: Path) -> Iterator[None]:
+    """Put a failure to write into words."""
+    try:
+        yield
+    except OSError as error:
+        seen = f"it cannot be written ({error.strerror or error})"
+        raise InputError(seen, f"Name another place with {option}.", str(place)) from None
 
 
 def main(argv: list[str] | None = None) -> int:
@@ -84,13 +103,28 @@ def main(argv: list[str] | None = None) -> int:
     Returns
     -------
     int
-        0 an answer was reached; 1 the readings allow none; 2 bad input or usage.
+        0 an answer was reached; 1 the readings allow none; 2 bad input or usage, or it was stopped.
     """
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            # A terminal that lacks a letter of a name shows a question mark instead.
+            stream.reconfigure(errors="replace")
     try:
         app(args=sys.argv[1:] if argv is None else argv, prog_name="fieldfit")
     except InputError as error:
         typer.echo(f"{error}", err=True)
         return BAD_INPUT
+    except OSError as error:
+        typer.echo(f"The answer cannot be printed: {error.strerror or error}.", err=True)
+        return BAD_INPUT
     except SystemExit as end:
-        return end.code if isinstance(end.code, int) else 0
+        return _status(end)
     return 0
+
+
+def _status(end: SystemExit) -> int:
+    """Return the exit status that the end of a command means."""
+    if end.code == INTERRUPTED:
+        typer.echo("Stopped.", err=True)
+        return BAD_INPUT
+    return end.code if isinstance(end.code, int) else 0

@@ -78,9 +78,14 @@ def read_section(path: str | Path) -> Section:
 def _file(path: Path) -> Path:
     """Return the section file that a path means."""
     file = path / FILE_NAME if path.is_dir() else path
+    if file.suffix.casefold() == ".csv":
+        advice = "Name the folder of the test section first, then its logs: fieldfit assess FOLDER LOG.csv"
+        raise InputError("this is a log, not a section file", advice, str(path))
     if not file.is_file():
         seen = f"there is no {FILE_NAME} in the folder" if path.is_dir() else "there is no such file or folder"
-        raise InputError(seen, f"Check the name, or write one with: fieldfit start {shown(str(path))}", str(path))
+        folder = shown(str(path))
+        called = f'"{folder}"' if " " in folder else folder
+        raise InputError(seen, f"Check the name, or write one with: fieldfit start {called}", str(path))
     return file
 
 

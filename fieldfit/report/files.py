@@ -105,10 +105,13 @@ def write_json(finding: Finding, path: Path) -> Path:
 
 
 def _write(texts: Mapping[Path, str]) -> tuple[Path, ...]:
-    """Write all texts beside their places, then move them in."""
+    """Write all texts beside their places, then move them in; a pipe or a device takes its text as it comes."""
     waiting: dict[Path, Path] = {}
     try:
         for path, text in texts.items():
+            if path.exists() and not path.is_file():
+                path.write_text(text, encoding="utf-8", newline="\n")
+                continue
             waiting[path] = _beside(path)
             waiting[path].write_text(text, encoding="utf-8", newline="\n")
         for path, temporary in waiting.items():
