@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Literal
 
+from fieldfit.field.contract import Contract
 from fieldfit.field.uncertain import Accuracy, Uncertain
 from fieldfit.hydraulics.liquids import Liquid
 
@@ -86,6 +87,58 @@ class Correlation:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class ReachPipe:
+    """Pipe of one reach where it differs from the section's: a `[[reach]]` table."""
+
+    upper: str
+    """Column of the tap at its upper end."""
+    lower: str
+    """Column of the tap at its lower end."""
+    bore: Uncertain
+    """As-new inside diameter [m]."""
+    bore_source: str
+    """Where the bore comes from."""
+    material: str | None
+    """Material, as the new-pipe table calls it; None when unknown."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Branch:
+    """A side flow along the section: a `[[branch]]` table."""
+
+    name: str
+    """As the user calls it."""
+    station: float
+    """Distance along the pipe [m]."""
+    flow: Uncertain | None
+    """Flow that leaves there [m³/s], negative where water comes in; None when it is to be inferred."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BoreEvidence:
+    """What something other than friction says of the bore today: a `[[bore_evidence]]` table."""
+
+    kind: Literal["coupon", "calliper", "gauge plate", "tracer", "laminar flow"]
+    """How it was found; each sees its own kind of average."""
+    bore: Uncertain
+    """Bore it gives [m]."""
+    date: dt.date | None = None
+    """Day it was found."""
+    between: tuple[str, str] | None = None
+    """Columns of the taps it holds between; None for the whole section."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Deposit:
+    """What is known of a deposit beforehand: the `[deposit]` table."""
+
+    density_kg_m3: Uncertain | None = None
+    """Density of the deposit as it sits in the pipe, water included [kg/m³]."""
+    variation: float = 0.3
+    """How unevenly it lies: relative standard deviation of its thickness along the reach [-]."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Section:
     """One test section, from its `section.toml`."""
 
@@ -119,7 +172,19 @@ class Section:
     """Limit of the friction correlation."""
     duty_flow_m3_s: float | None = None
     """Flow the pipe must carry [m³/s]."""
+    reach_pipes: tuple[ReachPipe, ...] = ()
+    """Reaches whose pipe differs from the section's."""
+    branches: tuple[Branch, ...] = ()
+    """Side flows, by station."""
+    meter_station_m: float | None = None
+    """Where the meter stands along the pipe [m]; None for upstream of every branch."""
+    bore_evidence: tuple[BoreEvidence, ...] = ()
+    """What something other than friction says of the bore."""
+    deposit: Deposit = field(default_factory=Deposit)
+    """What is known of a deposit."""
     screen_limits: tuple[tuple[str, float], ...] = ()
     """Limits of screens that the file changes, by name [SI]."""
+    contract: Contract | None = None
+    """What a contract asks of the pipe."""
     assumed: tuple[str, ...] = ()
     """Sentences on what the program assumed because the file is silent."""
