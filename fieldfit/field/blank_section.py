@@ -22,6 +22,7 @@ _ABOUT = {
     "tap": "A pressure tap and its gauge: one such table each, in the order of the flow.",
     "fitting": "A bend, valve or tee between the taps: one such table for each kind.",
     "campaign": "A day of testing and its log: one such table each. Not needed when the log is named in the command.",
+    "contract": "What a contract asks of the pipe, for fieldfit accept: one of c, roughness and head_loss.",
     "duty": "What the pipe must carry.",
     "correlation": "How far friction correlations are trusted; the trade's ±10 % when it is left out.",
     "screen": "Limits that decide which rows count; shown with the values that hold when they are left out.",

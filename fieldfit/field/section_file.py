@@ -9,6 +9,7 @@ from pathlib import Path
 from fieldfit.errors import InputError
 from fieldfit.field.quantities import quantity
 from fieldfit.field.section import Campaign, Correlation, Fitting, Section, Tap
+from fieldfit.field.section_contract import read_contract
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
 from fieldfit.field.section_taps import check_columns, read_meter, read_taps
 from fieldfit.field.toml_table import TomlTable, read_toml
@@ -71,6 +72,7 @@ def read_section(path: str | Path) -> Section:
         correlation=_correlation(top.table("correlation")),
         duty_flow_m3_s=read_duty(top.table("duty"), said),
         screen_limits=_screen_limits(top.table("screen")),
+        contract=read_contract(top.table("contract")),
         assumed=tuple(dict.fromkeys(said)),
     )
 

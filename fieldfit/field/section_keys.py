@@ -70,6 +70,25 @@ KEYS: tuple[Key, ...] = (
     _key("campaign.log", '"2026-05-12.csv"', "its log, beside this file", required=True),
     _key("campaign.cleaned", "true", "whether the pipe was cleaned since the campaign before"),
     _key("campaign.meter", '"MAG-205"', "serial of the meter, where it was another one"),
+    _key("contract.c", "130", "least Hazen–Williams C; this, roughness or head_loss"),
+    _key("contract.roughness", '"0.1 mm"', "greatest roughness; this, c or head_loss"),
+    _key(
+        "contract.head_loss", '"4.2 m"', "greatest head loss of the reach at the contract's flow; this, c or roughness"
+    ),
+    _key("contract.flow", '"25 L/s"', "flow the limit holds at; without it the flow that was tested best"),
+    _key("contract.temperature", '"15 degC"', "temperature the limit holds at; without it the tested one"),
+    _key("contract.bore", '"200 mm"', "bore that C is reckoned with by convention; without it the true bore"),
+    _key("contract.fittings", '"out"', 'whether fittings count: "in" (usual for head_loss) or "out" (usual else)'),
+    _key(
+        "contract.rule",
+        '"guarded acceptance"',
+        "decision rule: simple acceptance, guarded acceptance or guarded rejection",
+        required=True,
+    ),
+    _key("contract.risk", '"5 %"', "agreed risk of a guard band"),
+    _key(
+        "contract.built", '"145 ± 8"', "what is usually built, on the limit's scale; for the risks over many hand-overs"
+    ),
     _key("duty.flow", '"3.0 L/s"', "flow the pipe must carry", required=True),
     _key("correlation.standard_uncertainty", '"5 %"', "standard uncertainty of f from a friction correlation"),
     _key("correlation.decades", "1.5", "range of Reynolds number over which its error keeps together, in decades"),
@@ -77,7 +96,7 @@ KEYS: tuple[Key, ...] = (
 )
 """Every key, table by table."""
 
-TABLES = ("flow", "duty", "correlation", "screen")
+TABLES = ("flow", "duty", "correlation", "screen", "contract")
 """Tables that may stand once."""
 LISTS = ("tap", "fitting", "campaign")
 """Tables that may stand several times."""

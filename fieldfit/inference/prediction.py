@@ -54,17 +54,25 @@ class Predicted:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Loss:
+    """A head loss at a duty and the C it means, with or without fittings."""
+
+    head_loss_m: Predicted
+    """Head loss of the reach [m]."""
+    per_length: Predicted
+    """Head loss per length [-]."""
+    hazen_williams_c: Predicted
+    """C by the true bore, which is the as-new bore within its limit [-]."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Prediction:
     """What a fitted reach does at a duty."""
 
-    friction_loss_m: Predicted
-    """Head loss to friction [m]."""
-    head_loss_m: Predicted
-    """Head loss with the fittings [m]."""
-    hazen_williams_c: Predicted
-    """C by the true bore, which is the as-new bore within its limit [-]."""
-    nominal_c: Predicted
-    """C by the as-new bore taken as exact: the bore is then a convention and adds nothing [-]."""
+    friction: Loss
+    """Friction alone."""
+    whole: Loss
+    """Fittings included."""
     reynolds: float
     """Reynolds number [-]."""
     decades_outside: float
@@ -94,33 +102,23 @@ def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
     readings, errors = fit.model.readings, fit.model.errors
     bore = readings.bore.value * float(np.exp(fit.u @ errors.ln_bore))
     length = readings.length.value * float(np.exp(fit.u @ errors.ln_length))
-    fitting_k = readings.fitting_k.value + float(fit.u @ errors.fitting_k)
     reynolds = 4.0 * duty.flow_m3_s / (np.pi * bore * duty.viscosity_m2_s)
     curve = friction_curve(np.array([fit.ln_friction]), np.array([reynolds]), np.array([fit.model.reference.reynolds]))
     shape = _shape_at(fit, reynolds)
     velocity_head = 8.0 * duty.flow_m3_s**2 / (np.pi**2 * STANDARD_GRAVITY * bore**4)
     friction_m = float(curve.friction_factor[0] * np.exp(fit.u @ shape)) * length / bore * velocity_head
-    fittings_m = fitting_k * velocity_head
-    by_wall = float(curve.slope_parameter[0])
-    by_error = shape - errors.ln_bore * (5.0 + float(curve.slope_reynolds[0])) + errors.ln_length
-    share = friction_m / (friction_m + fittings_m)
-    whole_by_error = share * by_error + (1.0 - share) * (-4.0 * errors.ln_bore)
-    whole_by_error = whole_by_error + errors.fitting_k * velocity_head / (friction_m + fittings_m)
-    spread = _Spread(covariance(fit), _outside(fit, reynolds), limit)
-    c_by_error = C_BY_LOSS * (by_error - errors.ln_length)
+    whole_m = friction_m + (readings.fitting_k.value + float(fit.u @ errors.fitting_k)) * velocity_head
+    # Slopes of ln head loss in the wall and in every shared error; the fittings' part goes with D⁻⁴ and K alone.
+    friction = np.append(
+        float(curve.slope_parameter[0]),
+        shape - errors.ln_bore * (5.0 + float(curve.slope_reynolds[0])) + errors.ln_length,
+    )
+    fittings = np.append(0.0, errors.fitting_k * velocity_head - 4.0 * errors.ln_bore * (whole_m - friction_m))
+    whole = (friction * friction_m + fittings) / whole_m
+    spread = _Spread(fit, duty, limit, (bore, length), _outside(fit, reynolds))
     return Prediction(
-        friction_loss_m=spread.of(friction_m, by_wall, by_error),
-        head_loss_m=spread.of(friction_m + fittings_m, share * by_wall, whole_by_error),
-        hazen_williams_c=spread.of(
-            float(c_from_head_loss(duty.flow_m3_s, friction_m, bore, length)),
-            C_BY_LOSS * by_wall,
-            c_by_error + C_BY_BORE * errors.ln_bore,
-        ),
-        nominal_c=spread.of(
-            float(c_from_head_loss(duty.flow_m3_s, friction_m, readings.bore.value, length)),
-            C_BY_LOSS * by_wall,
-            c_by_error,
-        ),
+        friction=spread.loss(friction_m, friction),
+        whole=spread.loss(whole_m, whole),
         reynolds=reynolds,
         decades_outside=spread.decades_outside,
     )
@@ -128,21 +126,34 @@ def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
 
 @dataclass(frozen=True, slots=True)
 class _Spread:
-    """Turns slopes into uncertainties."""
+    """Turns a head loss and its slopes into values with uncertainties."""
 
-    covariance: Array
-    decades_outside: float
+    fit: Fit
+    duty: Duty
     limit: Correlation
+    bore_and_length_m: tuple[float, float]
+    decades_outside: float
 
-    def of(self, value: float, by_wall: float, by_error: Array) -> Predicted:
-        """Return a value with its uncertainties, from the slopes of its logarithm."""
-        slope = np.append(by_wall, by_error)
+    def loss(self, head_loss_m: float, slope: Array) -> Loss:
+        """Return a head loss, per length, and as C; slopes are of its logarithm."""
+        errors = self.fit.model.errors
+        bore, length = self.bore_and_length_m
+        per_length = slope - np.append(0.0, errors.ln_length)
+        c = float(c_from_head_loss(self.duty.flow_m3_s, head_loss_m, bore, length))
+        return Loss(
+            head_loss_m=self._of(head_loss_m, slope),
+            per_length=self._of(head_loss_m / length, per_length),
+            hazen_williams_c=self._of(c, C_BY_LOSS * per_length + C_BY_BORE * np.append(0.0, errors.ln_bore)),
+        )
+
+    def _of(self, value: float, slope: Array) -> Predicted:
+        """Return a value with its uncertainties."""
         outside = self.decades_outside / self.limit.decades
         drift = self.limit.standard * float(np.sqrt(2.0 * (1.0 - np.exp(-0.5 * outside**2))))
         return Predicted(
             value=value,
-            measurement=float(np.sqrt(slope @ self.covariance @ slope)),
-            extrapolation=abs(by_wall) * drift,
+            measurement=float(np.sqrt(slope @ covariance(self.fit) @ slope)),
+            extrapolation=abs(float(slope[0])) * drift,
         )
 
 
