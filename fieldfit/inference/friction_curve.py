@@ -56,7 +56,7 @@ def friction_curve(ln_friction: Array, reynolds: Array, reference_reynolds: Arra
     --------
     >>> curve = friction_curve(np.log([0.03]), np.array([[1e5], [1e6]]), np.array([1e5]))
     >>> curve.friction_factor.round(4).tolist()
-    [[0.03], [0.0289]]
+    [[0.03], [0.0291]]
     """
     at_smooth = smooth(reference_reynolds)
     friction = np.exp(ln_friction)
