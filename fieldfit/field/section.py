@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import Literal
 
 from fieldfit.field.contract import Contract
+from fieldfit.field.outlook import Changes, Outlook
 from fieldfit.field.uncertain import Accuracy, Uncertain
 from fieldfit.hydraulics.liquids import Liquid
 
@@ -74,6 +75,8 @@ class Campaign:
     """Whether the pipe was cleaned since the campaign before."""
     meter: str | None = None
     """Serial of the meter used, when it differs from `[flow]`."""
+    changes: Changes = field(default_factory=Changes)
+    """What else changed since the campaign before."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -170,6 +173,8 @@ class Section:
     """Campaigns named in the file."""
     correlation: Correlation = field(default_factory=Correlation)
     """Limit of the friction correlation."""
+    outlook: Outlook = field(default_factory=Outlook)
+    """What is known of the water and asked of the years ahead."""
     duty_flow_m3_s: float | None = None
     """Flow the pipe must carry [m³/s]."""
     reach_pipes: tuple[ReachPipe, ...] = ()

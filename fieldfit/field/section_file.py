@@ -9,8 +9,11 @@ from pathlib import Path
 from fieldfit.errors import InputError
 from fieldfit.field.quantities import quantity
 from fieldfit.field.section import Campaign, Correlation, Fitting, Section, Tap
+from fieldfit.field.section_bore_evidence import read_bore_evidence, read_deposit
 from fieldfit.field.section_contract import read_contract
+from fieldfit.field.section_outlook import read_changes, read_cleaned, read_outlook
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
+from fieldfit.field.section_survey import read_branches, read_meter_station, read_reach_pipes
 from fieldfit.field.section_taps import check_columns, read_meter, read_taps
 from fieldfit.field.toml_table import TomlTable, read_toml
 from fieldfit.field.units import shown
@@ -54,6 +57,9 @@ def read_section(path: str | Path) -> Section:
         check_columns(meter, taps)
     fittings = read_fittings(top.tables("fitting"), pipe.bore.value, said)
     _check_sizes(top, pipe, taps, fittings)
+    reach_pipes = read_reach_pipes(top.tables("reach"), taps, said)
+    meter_station = read_meter_station(flow)
+    branches = read_branches(top.tables("branch"), taps, meter_station, said)
     installed = top.date("installed")
     return Section(
         name=top.needed("name", LONGEST_NAME),
@@ -70,7 +76,13 @@ def read_section(path: str | Path) -> Section:
         fittings=fittings,
         campaigns=tuple(_campaign(table, file.parent, installed) for table in top.tables("campaign")),
         correlation=_correlation(top.table("correlation")),
+        outlook=read_outlook(top),
         duty_flow_m3_s=read_duty(top.table("duty"), said),
+        reach_pipes=reach_pipes,
+        branches=branches,
+        meter_station_m=meter_station,
+        bore_evidence=read_bore_evidence(top.tables("bore_evidence"), taps),
+        deposit=read_deposit(top.table("deposit")),
         screen_limits=_screen_limits(top.table("screen")),
         contract=read_contract(top.table("contract")),
         assumed=tuple(dict.fromkeys(said)),
@@ -120,7 +132,9 @@ def _campaign(table: TomlTable, folder: Path, installed: dt.date | None) -> Camp
         seen = f"the test of {date} is older than the pipe, installed {installed}"
         raise InputError(seen, "Check both dates: year, month, day.").at(table.where("date"))
     log = folder / table.needed("log")
-    return Campaign(date=date, log=log, cleaned=table.flag("cleaned"), meter=table.text("meter"))
+    return Campaign(
+        date=date, log=log, cleaned=read_cleaned(table)[0], meter=table.text("meter"), changes=read_changes(table)
+    )
 
 
 def _correlation(table: TomlTable | None) -> Correlation:

@@ -55,6 +55,7 @@ KEYS: tuple[Key, ...] = (
     _key("flow.accuracy", '"0.5 % of reading"', "how far the meter may be off", required=True),
     _key("flow.meter", '"MAG-118"', "serial; campaigns that name the same meter share its error"),
     _key("flow.senses", '"volume"', '"velocity" for clamp-on and insertion meters that use the same bore'),
+    _key("flow.station", '"0 m"', "where the meter stands along the pipe; needed only with branches above it"),
     _key("tap.column", '"upstream"', "heading in the log, without its unit", required=True),
     _key("tap.unit", '"kPa"', "unit of that column; it wins over the heading's"),
     _key("tap.station", '"38.2 m ± 0.1 m"', "distance along the pipe, with the flow, and its limit", required=True),
@@ -66,10 +67,43 @@ KEYS: tuple[Key, ...] = (
     _key("fitting.kind", '"gate valve, open"', "kind of fitting that K is looked up for; this or k"),
     _key("fitting.count", "2", "how many there are"),
     _key("fitting.station", '"12 m"', "distance along the pipe; needed with more than two taps"),
+    _key("reach.from", '"upstream"', "column of the tap at the upper end of a reach of other pipe", required=True),
+    _key("reach.to", '"downstream"', "column of the next tap, where that reach ends", required=True),
+    _key("reach.bore", '"102.3 mm ± 0.5 mm"', "as-new inside diameter of that reach; this or pipe", required=True),
+    _key("reach.pipe", '"NPS 4 schedule 40"', "pipe size that its bore is looked up for; this or bore"),
+    _key("reach.material", '"cast iron"', "its material; picks the values of new pipe for that reach"),
+    _key("branch.name", '"service to the laundry"', "printed name"),
+    _key("branch.station", '"12 m"', "distance along the pipe", required=True),
+    _key(
+        "branch.flow",
+        '"1.2 L/s ± 5 %"',
+        'flow that leaves there, negative where it comes in, or "unknown"',
+        required=True,
+    ),
+    _key("bore_evidence.kind", '"coupon"', "coupon, calliper, gauge plate or tracer", required=True),
+    _key("bore_evidence.bore", '"47 mm ± 1 mm"', "bore that was found; for a tracer this, or time, flow and length"),
+    _key("bore_evidence.time", '"95 s ± 1 s"', "transit time of a tracer"),
+    _key("bore_evidence.flow", '"2.4 L/s ± 1 %"', "flow during the tracer's run"),
+    _key("bore_evidence.length", '"120 m ± 0.5 m"', "length that the tracer ran"),
+    _key("bore_evidence.date", "2026-05-12", "day it was found"),
+    _key("bore_evidence.from", '"upstream"', "column of the tap that it holds from; the first one when left out"),
+    _key("bore_evidence.to", '"downstream"', "column of the tap that it holds to; the last one when left out"),
+    _key("deposit.density", '"1900 kg/m3 ± 20 %"', "density of the deposit as it sits in the pipe, for its mass"),
+    _key("deposit.variation", '"30 %"', "how unevenly the deposit lies: standard deviation over mean thickness"),
     _key("campaign.date", "2026-05-12", "day of the test"),
     _key("campaign.log", '"2026-05-12.csv"', "its log, beside this file", required=True),
-    _key("campaign.cleaned", "true", "whether the pipe was cleaned since the campaign before"),
+    _key("campaign.cleaned", "true", "whether the pipe was cleaned since the campaign before, or the day it was"),
+    _key("campaign.relined", '"epoxy-lined steel"', "material of a lining put in since the campaign before, or true"),
+    _key("campaign.bore", '"51.0 mm ± 0.3 mm"', "bore after lining, where it changed"),
+    _key("campaign.promised_c", "120", "C that the cleaning or lining was to reach"),
+    _key("campaign.valve", '"gate valve at 12 m replaced"', "what was done to a valve; its loss is then a new one"),
+    _key("campaign.length", '"38.2 m ± 0.1 m"', "distance between the taps on that day, where they were elsewhere"),
     _key("campaign.meter", '"MAG-205"', "serial of the meter, where it was another one"),
+    _key("campaign.meter_accuracy", '"1 % of reading"', "how far that meter may be off, where it differs"),
+    _key("campaign.gauges", '{ upstream = "PG-21" }', "serial of the gauge at a tap, where it was another one"),
+    _key("campaign.gauge_accuracy", '"0.1 % of 6 bar"', "how far those gauges may be off, where it differs"),
+    _key("campaign.recalibrated", '["MAG-118"]', "instruments calibrated anew since the campaign before, by serial"),
+    _key("campaign.note", '"after the drought"', "anything the reader should know of that day"),
     _key("contract.c", "130", "least Hazen–Williams C; this, roughness or head_loss"),
     _key("contract.roughness", '"0.1 mm"', "greatest roughness; this, c or head_loss"),
     _key(
@@ -90,15 +124,25 @@ KEYS: tuple[Key, ...] = (
         "contract.built", '"145 ± 8"', "what is usually built, on the limit's scale; for the risks over many hand-overs"
     ),
     _key("duty.flow", '"3.0 L/s"', "flow the pipe must carry", required=True),
+    _key("duty.head", '"15 m"', "head available over the section, for its capacity"),
+    _key("water.langelier", "-1.3", "Langelier index of the water, for a published growth rate"),
+    _key("water.ph", "7.2", "pH of the water, for a published growth rate"),
+    _key("growth.rate", '"0.05 mm/year ± 50 %"', "your own growth rate of the roughness, used with a single campaign"),
+    _key("growth.until", "2046-01-01", "day the forecast reaches; 20 years after the last test when left out"),
+    _key("growth.worse_by", '"10 %"', "rise of the head loss whose probability is printed"),
+    _key("threshold.c", "95", "lowest C at the duty flow, for the date it is reached"),
+    _key("threshold.head_loss", '"12 m"', "largest head loss at the duty flow"),
+    _key("threshold.capacity", '"2.5 L/s"', "smallest flow at the available head"),
+    _key("threshold.by", "2035-01-01", "day that the probability of a crossing is wanted for"),
     _key("correlation.standard_uncertainty", '"5 %"', "standard uncertainty of f from a friction correlation"),
     _key("correlation.decades", "1.5", "range of Reynolds number over which its error keeps together, in decades"),
     *(_key(f"screen.{limit.name}", f"{limit.value:g}", limit.meaning.rstrip(".")) for limit in LIMITS.values()),
 )
 """Every key, table by table."""
 
-TABLES = ("flow", "duty", "correlation", "screen", "contract")
+TABLES = ("flow", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
 """Tables that may stand once."""
-LISTS = ("tap", "fitting", "campaign")
+LISTS = ("tap", "fitting", "reach", "branch", "bore_evidence", "campaign")
 """Tables that may stand several times."""
 
 
@@ -108,6 +152,6 @@ def keys_of(table: str) -> dict[str, Key]:
     Examples
     --------
     >>> list(keys_of("duty"))
-    ['flow']
+    ['flow', 'head']
     """
     return {key.name: key for key in KEYS if key.table == table}
