@@ -157,7 +157,11 @@ def _check_apart(tables: list[TomlTable], taps: list[Tap]) -> None:
     for table, (before, tap) in zip(tables[1:], itertools.pairwise(taps), strict=True):
         if not tap.station.value > before.station.value:
             seen = f"the taps '{shown(before.column)}' and '{shown(tap.column)}' are both at {tap.station.value:g} m"
-            raise InputError(seen, "Write each tap's distance along the pipe.").at(table.where("station"))
+            advice = (
+                "Write each tap's distance along the pipe. Between two gauges on one tap there is no pipe, so no friction "
+                "to measure: leave one of them out."
+            )
+            raise InputError(seen, advice).at(table.where("station"))
 
 
 def _with_default_limits(taps: list[Tap], said: list[str]) -> list[Tap]:

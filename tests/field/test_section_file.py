@@ -274,6 +274,10 @@ def test_the_examples_in_the_list_of_keys_are_right(read):
     )
     rest = "".join(f"[{t}]\n{lines(t)}" for t in ("flow", "duty", "correlation", "screen"))
     fittings = f"[[fitting]]\n{lines('fitting', ['kind'])}[[fitting]]\n{lines('fitting', ['k'])}[[campaign]]\n{lines('campaign')}"
+    coupon = f"[[bore_evidence]]\n{lines('bore_evidence', ['time', 'flow', 'length'])}"
+    tracer = "[[bore_evidence]]\n" + lines("bore_evidence", ["bore"]).replace('"coupon"', '"tracer"')
+    fittings += f"[[reach]]\n{lines('reach', ['pipe'])}[[branch]]\n{lines('branch')}{coupon}{tracer}[deposit]\n{lines('deposit')}"
+    fittings = fittings.replace('from = "upstream"', 'from = "u"').replace('to = "downstream"', 'to = "upstream"')
     for one, other in (("pipe", "bore"), ("bore", "pipe")):
         section = read(lines("", [one]) + rest + taps + fittings)
         assert (section.name, len(section.fittings)) == ("Kiln cooling supply", 2), other
