@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -15,6 +16,7 @@ from fieldfit.field.reaches import reach_readings
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
+from fieldfit.field.section_outlook import section_on
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 from fieldfit.inference.estimate import estimate
 from fieldfit.report.cautions import cautions
@@ -42,8 +44,15 @@ def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
         When a file cannot be used; the message says where and what to do.
     """
     known = section if isinstance(section, Section) else read_section(Path(section))
-    campaigns = [assess_campaign(known, path, date) for path, date in logs_to_read(known, logs)]
+    campaigns = [_campaign(known, path, date) for path, date in logs_to_read(known, logs)]
     return Finding(section=known, campaigns=tuple(campaigns))
+
+
+def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
+    """Assess one log with the section as it was on its day."""
+    named = [one for one in section.campaigns if one.log.name == path.name]
+    found = assess_campaign(section_on(section, named[0] if named else None), path, date)
+    return replace(found, campaign=named[0]) if named else found
 
 
 def assess_campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:

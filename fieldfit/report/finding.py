@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, ReachReadings, Screening
-from fieldfit.field.section import Section
+from fieldfit.field.section import Campaign, Section
 from fieldfit.inference.wall import Wall
 
 
@@ -50,6 +50,8 @@ class CampaignFinding:
     """One per pair of neighbouring taps."""
     cautions: tuple[Caution, ...]
     """What to know beside the answer."""
+    campaign: Campaign | None = None
+    """What the section file says of that day; None for a log that it does not name."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
