@@ -170,13 +170,15 @@ def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
     return float(misfit @ misfit + u @ u)
 
 
-def covariance(fit: Fit) -> Array:
+def covariance(fit: Fit, better: Array | None = None) -> Array:
     """Return the covariance of ln f at the reference and of the shared errors, (1 + M, 1 + M), at the best point.
 
     Parameters
     ----------
     fit : Fit
         A fitted reach.
+    better : (M + 1,) array, optional
+        How many times smaller each shared error, and last the readings' noise, is to be taken; all ones by default.
 
     Returns
     -------
@@ -184,7 +186,10 @@ def covariance(fit: Fit) -> Array:
         The wall first, then the shared errors in their order.
     """
     slopes = _jacobian(fit.model, fit.random_m, fit.ln_friction, fit.u)
-    return np.asarray(np.linalg.inv(slopes @ slopes.T))
+    count = len(fit.random_m)
+    factor = np.ones(len(fit.u) + 1) if better is None else better
+    weight = np.concatenate([np.full(count, factor[-1]), factor[:-1]])
+    return np.asarray(np.linalg.inv((slopes * weight**2) @ slopes.T))
 
 
 def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> tuple[Array, float]:

@@ -73,13 +73,15 @@ class Prediction:
     """Friction alone."""
     whole: Loss
     """Fittings included."""
+    flow_m3_s: float
+    """Flow [m³/s]."""
     reynolds: float
     """Reynolds number [-]."""
     decades_outside: float
     """How far the Reynolds number lies outside those tested [decades]; 0 within them."""
 
 
-def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
+def predict(fit: Fit, duty: Duty, limit: Correlation, better: Array | None = None) -> Prediction:
     """Say what a fitted reach does at a flow.
 
     Within the flows tested the fit interpolates and the correlation's level does not enter. Outside them the
@@ -94,6 +96,8 @@ def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
         Flow and viscosity asked for.
     limit : Correlation
         How far friction correlations can be trusted.
+    better : (M + 1,) array, optional
+        How many times smaller each shared error, and last the readings' noise, is to be taken.
 
     Returns
     -------
@@ -115,31 +119,39 @@ def predict(fit: Fit, duty: Duty, limit: Correlation) -> Prediction:
     )
     fittings = np.append(0.0, errors.fitting_k * velocity_head - 4.0 * errors.ln_bore * (whole_m - friction_m))
     whole = (friction * friction_m + fittings) / whole_m
-    spread = _Spread(fit, duty, limit, (bore, length), _outside(fit, reynolds))
+    outside = _outside(fit, reynolds)
+    spread = _Spread(
+        fit=fit,
+        covariance=covariance(fit, better),
+        bore_and_length_m=(bore, length),
+        flow_m3_s=duty.flow_m3_s,
+        drift=limit.standard * float(np.sqrt(2.0 * (1.0 - np.exp(-0.5 * (outside / limit.decades) ** 2)))),
+    )
     return Prediction(
         friction=spread.loss(friction_m, friction),
         whole=spread.loss(whole_m, whole),
+        flow_m3_s=duty.flow_m3_s,
         reynolds=reynolds,
-        decades_outside=spread.decades_outside,
+        decades_outside=outside,
     )
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, kw_only=True)
 class _Spread:
     """Turns a head loss and its slopes into values with uncertainties."""
 
     fit: Fit
-    duty: Duty
-    limit: Correlation
+    covariance: Array
     bore_and_length_m: tuple[float, float]
-    decades_outside: float
+    flow_m3_s: float
+    drift: float
 
     def loss(self, head_loss_m: float, slope: Array) -> Loss:
         """Return a head loss, per length, and as C; slopes are of its logarithm."""
         errors = self.fit.model.errors
         bore, length = self.bore_and_length_m
         per_length = slope - np.append(0.0, errors.ln_length)
-        c = float(c_from_head_loss(self.duty.flow_m3_s, head_loss_m, bore, length))
+        c = float(c_from_head_loss(self.flow_m3_s, head_loss_m, bore, length))
         return Loss(
             head_loss_m=self._of(head_loss_m, slope),
             per_length=self._of(head_loss_m / length, per_length),
@@ -148,12 +160,10 @@ class _Spread:
 
     def _of(self, value: float, slope: Array) -> Predicted:
         """Return a value with its uncertainties."""
-        outside = self.decades_outside / self.limit.decades
-        drift = self.limit.standard * float(np.sqrt(2.0 * (1.0 - np.exp(-0.5 * outside**2))))
         return Predicted(
             value=value,
-            measurement=float(np.sqrt(slope @ covariance(self.fit) @ slope)),
-            extrapolation=abs(float(slope[0])) * drift,
+            measurement=float(np.sqrt(slope @ self.covariance @ slope)),
+            extrapolation=abs(float(slope[0])) * self.drift,
         )
 
 
