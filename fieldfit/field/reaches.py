@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.dead_taps import DEAD_TAP, alive_at, take_plateaus
+from fieldfit.field.reach_pipe import reach_flow, section_of_reach, velocity_head_drop
 from fieldfit.field.readings import Levelling, Plateaus, ReachReadings
-from fieldfit.field.screens import CRITICAL, LAMINAR, NEGATIVE, UNRESOLVED, limit
+from fieldfit.field.screens import CRITICAL, LAMINAR, NEGATIVE, UNRESOLVED, UNSTEADY, limit
 from fieldfit.field.section import Fitting, Section, Tap
 from fieldfit.field.uncertain import Uncertain
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
@@ -41,11 +45,13 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
     """
     upstream, downstream = section.taps[reach], section.taps[reach + 1]
     length = _length(upstream, downstream)
+    plateaus, velocity_m, dead = _of_reach(plateaus, section, reach)
+    section = section_of_reach(section, reach)
     weight = section.liquid.density_kg_m3(plateaus.temperature_degc) * STANDARD_GRAVITY
     random = np.maximum(plateaus.random_pa[reach] / weight, 1e-7)
     levelling = _levelling(plateaus, section, reach, weight, random)
     drop = _elevation_drop(upstream, downstream)
-    head = _head_loss(plateaus, reach, weight, drop)
+    head = _head_loss(plateaus, reach, weight, drop) + velocity_m
     if levelling:
         head = head - _offsets(plateaus, head)
     elif drop is None:
@@ -55,9 +61,12 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
             'Write elevation = "1.20 m" for both taps, or take readings with the flow stopped.',
             section.path.name,
         )
-    head = head - length.value * plateaus.flow_slope_m3_s2 / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
+    inertia = length.value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
+    head = head - inertia * plateaus.flow_slope_m3_s2
+    doubt = inertia * _slope_standard(plateaus)
+    random = np.hypot(random, doubt)
     standard = np.hypot(random, _level_standard(plateaus, section, reach, weight, levelling))
-    reasons = _reasons(plateaus, section, head, standard)
+    reasons = _reasons(plateaus, section, head, (standard, doubt))
     keep = ~plateaus.static & (reasons == "")
     temperature = plateaus.temperature_degc[keep]
     return ReachReadings(
@@ -83,8 +92,18 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
         / 4.0
         * section.bore.value
         * float(np.max(section.liquid.viscosity_m2_s(plateaus.temperature_degc), initial=0.0)),
-        set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why),
+        set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why)
+        + dead,
     )
+
+
+def _of_reach(plateaus: Plateaus, section: Section, reach: int) -> tuple[Plateaus, Array, tuple[tuple[int, str], ...]]:
+    """Return the plateaus with both taps alive and the reach's own flow, velocity heads lost [m], and the others."""
+    alive = alive_at(plateaus, (reach, reach + 1))
+    dead = tuple((int(number), DEAD_TAP) for number in plateaus.number[~alive])
+    kept = take_plateaus(plateaus, alive)
+    velocity_m = np.where(kept.static, 0.0, velocity_head_drop(kept.flow_m3_s, section, reach))
+    return replace(kept, flow_m3_s=reach_flow(kept.flow_m3_s, section, reach)), velocity_m, dead
 
 
 def _length(upstream: Tap, downstream: Tap) -> Uncertain:
@@ -115,9 +134,15 @@ def _head_loss(plateaus: Plateaus, reach: int, weight: Array, drop: Uncertain | 
     return np.asarray(difference / weight + (drop.value if drop else 0.0))
 
 
+def _slope_standard(plateaus: Plateaus) -> Array:
+    """Return the standard error of each plateau's rate of change of flow [m³/s²]; zero where it is not known."""
+    known = plateaus.flow_slope_standard_m3_s2
+    return np.zeros(len(plateaus.number)) if known is None else known
+
+
 def _offsets(plateaus: Plateaus, head: Array) -> Array:
     """Return the apparent loss at rest at the time of each plateau [m], in a line between the statics."""
-    middle = (plateaus.start_s + plateaus.end_s) / 2.0
+    middle = (plateaus.start_s + plateaus.end_s) / 2.0 if plateaus.middle_s is None else plateaus.middle_s
     return np.interp(middle, middle[plateaus.static], head[plateaus.static])
 
 
@@ -160,8 +185,12 @@ def _level_standard(
     return np.asarray(np.hypot(gauges, drop.standard if drop else 0.0))
 
 
-def _reasons(plateaus: Plateaus, section: Section, head: Array, standard: Array) -> NDArray[np.str_]:
-    """Return why a flowing plateau carries no roughness, empty where it does; the first reason counts."""
+def _reasons(plateaus: Plateaus, section: Section, head: Array, doubts: tuple[Array, Array]) -> NDArray[np.str_]:
+    """Return why a flowing plateau carries no roughness, empty where it does; the first reason counts.
+
+    The doubts are the standard uncertainties of the head loss and of its correction for inertia [m].
+    """
+    standard, inertia = doubts
     viscosity = section.liquid.viscosity_m2_s(plateaus.temperature_degc)
     reynolds = 4.0 * plateaus.flow_m3_s / (np.pi * section.bore.value * viscosity)
     clear = limit(section, "resolution") * standard
@@ -171,6 +200,7 @@ def _reasons(plateaus: Plateaus, section: Section, head: Array, standard: Array)
         (reynolds < limit(section, "turbulent"), CRITICAL),
         (head < -clear, NEGATIVE),
         (head < clear, UNRESOLVED),
+        (inertia > limit(section, "inertia") * head, UNSTEADY),
     )
     return np.select([test for test, _ in tests], [why for _, why in tests], default="").astype(np.str_)
 

@@ -23,6 +23,8 @@ class Screening:
     """(N,) number of the plateau a used row belongs to, from 1; 0 for none."""
     counts: tuple[tuple[str, int], ...]
     """Rows set aside by reason, most first."""
+    block: NDArray[np.int64] | None = None
+    """(N,) time block of each row of a service log, whose plateaus are groups of blocks of like flow; else None."""
 
     @property
     def used(self) -> int:
@@ -58,6 +60,10 @@ class Plateaus:
     """(R, K) rows that count as independent [-]."""
     curvature_pa: Array
     """(R, K) how far the mean pressure difference lies above the one at the mean flow [Pa]."""
+    flow_slope_standard_m3_s2: Array | None = None
+    """(K,) standard error of `flow_slope_m3_s2` [m³/s²]; None where it is not known."""
+    middle_s: Array | None = None
+    """(K,) mean time of the rows of each group of a service log [s since the log's first row]; else None."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

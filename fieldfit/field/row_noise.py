@@ -8,6 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.log import Log
+from fieldfit.field.quantisation import steps_left
+from fieldfit.field.variances import pooled_variance
 
 Array = NDArray[np.float64]
 Rows = NDArray[np.int64]
@@ -28,8 +30,9 @@ def noise_of_mean(log: Log, members: list[Rows], reach: int, slopes: Array) -> M
     """Find the standard error of each plateau's pressure difference from the rows themselves.
 
     Only what the flow does not explain is noise: the rows' distance from a line of the known slope through the
-    plateau's means. Its memory is taken from all plateaus together (integrated autocorrelation time). A column
-    written in steps is no better than its step, however many rows repeat it.
+    plateau's means. Its memory is taken from all plateaus together (integrated autocorrelation time), and so is part
+    of its variance, see `variances.pooled_variance`. A column written in steps is no better than its step where it
+    stands still, see `quantisation.step_standard`.
 
     Parameters
     ----------
@@ -46,24 +49,34 @@ def noise_of_mean(log: Log, members: list[Rows], reach: int, slopes: Array) -> M
     -------
     MeanNoise
     """
-    residuals, curvature = [], []
+    residuals, curved = [], []
     for rows, slope in zip(members, slopes, strict=True):
         flow = log.flow_m3_s[rows] - np.mean(log.flow_m3_s[rows])
         difference = log.pressure_pa[reach, rows] - log.pressure_pa[reach + 1, rows]
         difference = difference - np.mean(difference)
         residuals.append(difference - slope * flow)
-        curvature.append(_curvature(flow, difference, slope, float(np.mean(log.flow_m3_s[rows]))))
+        curved.append(curvature(flow, difference, slope, float(np.mean(log.flow_m3_s[rows]))))
     memory = autocorrelation_time(residuals)
     count = np.array([len(rows) for rows in members], dtype=np.float64)
     independent = np.maximum(count / memory, 1.0)
     spread = np.array([float(np.sum(part**2)) for part in residuals]) / np.maximum(count - memory, 1.0)
-    steps = np.hypot(*log.pressure_step_pa[reach : reach + 2]) / np.sqrt(12.0)
-    flow_step = np.abs(slopes) * log.flow_step_m3_s / np.sqrt(12.0)
-    standard = np.sqrt(spread / independent + steps**2 + flow_step**2)
-    return MeanNoise(standard, independent, np.array(curvature))
+    for kind in (slopes == 0.0, slopes != 0.0):
+        # Statics are quieter than flow, so the two are not pooled.
+        spread[kind] = pooled_variance(spread[kind], np.maximum(independent[kind] - 1.0, 1.0))
+    return MeanNoise(
+        np.sqrt(spread / independent + step_variance(log, members, reach, slopes)), independent, np.array(curved)
+    )
 
 
-def _curvature(flow: Array, difference: Array, slope: float, mean_flow: float) -> float:
+def step_variance(log: Log, members: list[Rows], reach: int, slopes: Array) -> Array:
+    """Return the variance that the steps of both gauges and of the meter leave in each mean difference [Pa²]."""
+    variance = (slopes * steps_left(log.flow_m3_s, members, log.flow_step_m3_s)) ** 2
+    for tap in (reach, reach + 1):
+        variance += steps_left(log.pressure_pa[tap], members, float(log.pressure_step_pa[tap])) ** 2
+    return variance
+
+
+def curvature(flow: Array, difference: Array, slope: float, mean_flow: float) -> float:
     """Return how far a mean of differences lies above the difference at the mean flow [Pa].
 
     To second order it is h''/2 times the variance of the flow, and h''/h' = 0.9/Q where h goes with Q to the 1.9.

@@ -13,11 +13,10 @@ from fieldfit.field.section import Section
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
+Rows = NDArray[np.int64]
 
 VACUUM_PA = -101_325.0
 """Gauge pressure that nothing can be below, near enough [Pa]."""
-REVERSED_SHARE = 0.01
-"""Share of the largest flow that a meter's noise about zero may reach."""
 
 
 def still_below(log: Log, section: Section) -> float:
@@ -61,7 +60,17 @@ def stuck(log: Log, section: Section) -> Mask:
 def reversed_flow(log: Log, section: Section) -> Mask:
     """Return the (N,) rows in which the water ran backwards, clear of the meter's noise about zero."""
     largest = float(np.nanmax(np.abs(log.flow_m3_s), initial=0.0))
-    return np.asarray(log.flow_m3_s < -max(still_below(log, section), REVERSED_SHARE * largest))
+    return np.asarray(log.flow_m3_s < -max(still_below(log, section), limit(section, "reversed") * largest))
+
+
+def pauses(log: Log, section: Section) -> Rows:
+    """Return the rows before which the clock paused for much longer than is its habit."""
+    told = np.flatnonzero(np.isfinite(log.time_s))
+    steps = np.diff(log.time_s[told])
+    forward = steps[steps > 0.0]
+    if log.kind == "sheet" or forward.size == 0:
+        return np.empty(0, dtype=np.int64)
+    return told[1:][steps > limit(section, "gap") * float(np.median(forward))]
 
 
 ROW_SCREENS: tuple[tuple[str, Callable[[Log, Section], Mask]], ...] = (

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Literal
 
 from fieldfit.field.section import Section
 
@@ -37,6 +38,19 @@ LIMITS = {
             meaning="The smallest relative change of flow that parts two plateaus.",
         ),
         Limit(
+            name="gap",
+            value=60.0,
+            unit="-",
+            meaning="A pause of the clock over this many usual intervals ends a plateau.",
+        ),
+        Limit(
+            name="ramp",
+            value=0.02,
+            unit="-",
+            meaning="A stretch whose flow changes by more than this share, and goes on changing alike beyond both ends, is a "
+            "piece of a valve move.",
+        ),
+        Limit(
             name="drift",
             value=0.10,
             unit="-",
@@ -44,6 +58,36 @@ LIMITS = {
         ),
         Limit(
             name="plateau_rows", value=8.0, unit="-", meaning="Fewer rows than this make no plateau in a logger's file."
+        ),
+        Limit(
+            name="inertia",
+            value=0.05,
+            unit="-",
+            meaning="A plateau whose correction for inertia is uncertain by more than this share of its head loss is unsteady.",
+        ),
+        Limit(
+            name="service_hours",
+            value=6.0,
+            unit="h",
+            meaning="A log at least this long, whose flow seldom stands still, is read as a service log.",
+        ),
+        Limit(
+            name="service_steady",
+            value=0.5,
+            unit="-",
+            meaning="Share of the flowing rows that must lie on steady plateaus for a long log to be read by plateaus.",
+        ),
+        Limit(
+            name="block",
+            value=900.0,
+            unit="s",
+            meaning="Length of the time blocks that a service log is cut into before they are grouped by flow.",
+        ),
+        Limit(
+            name="reversed",
+            value=0.01,
+            unit="-",
+            meaning="Backward flow under this share of the largest counts as the meter's noise about zero.",
         ),
         Limit(
             name="stuck",
@@ -81,8 +125,58 @@ CRITICAL = "critical zone"
 UNRESOLVED = "head loss below resolution"
 NEGATIVE = "negative head loss"
 
-REASONS = (MISSING, CLOCK, RANGE, STUCK, REVERSED, UNSTEADY, OUTLIER, LAMINAR, CRITICAL, NEGATIVE, UNRESOLVED)
-"""Every reason a row can be set aside for, in the order they are tried."""
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Screen:
+    """One screen: what it leaves behind, what it looks at, and the limits that steer it."""
+
+    reason: str
+    """Reason it leaves with what it sets aside."""
+    judges: Literal["row", "stretch", "plateau"]
+    """What it looks at: a single row, a stretch of rows, or the means of a plateau."""
+    limits: tuple[str, ...]
+    """Names of its limits."""
+    asks: str
+    """What it sets aside, in one sentence."""
+
+
+SCREENS: tuple[Screen, ...] = (
+    Screen(reason=MISSING, judges="row", limits=(), asks="A value that is needed is not there."),
+    Screen(reason=CLOCK, judges="row", limits=(), asks="The clock repeats itself or runs backwards."),
+    Screen(reason=RANGE, judges="row", limits=(), asks="A gauge reads beyond its range, or less than a vacuum."),
+    Screen(
+        reason=STUCK,
+        judges="row",
+        limits=("stuck", "static_flow"),
+        asks="A gauge repeats one reading while water flows.",
+    ),
+    Screen(reason=REVERSED, judges="row", limits=("reversed", "static_flow"), asks="The water runs backwards."),
+    Screen(reason=OUTLIER, judges="stretch", limits=("outlier",), asks="A row lies far off the middle of its plateau."),
+    Screen(
+        reason=UNSTEADY,
+        judges="stretch",
+        limits=("flow_step", "plateau_rows", "gap", "ramp", "drift", "inertia"),
+        asks="The flow is on its way, or is steady for too few rows; or its inertia cannot be corrected well.",
+    ),
+    Screen(reason=LAMINAR, judges="plateau", limits=("laminar",), asks="Laminar flow does not feel the wall."),
+    Screen(
+        reason=CRITICAL,
+        judges="plateau",
+        limits=("laminar", "turbulent"),
+        asks="Between laminar and turbulent no law holds.",
+    ),
+    Screen(reason=NEGATIVE, judges="plateau", limits=("resolution",), asks="The head loss is clearly below zero."),
+    Screen(
+        reason=UNRESOLVED,
+        judges="plateau",
+        limits=("resolution",),
+        asks="The head loss does not stand clear of its own uncertainty.",
+    ),
+)
+"""Every screen in order of precedence: the first that catches a row gives the reason."""
+
+REASONS = tuple(screen.reason for screen in SCREENS)
+"""Every reason a row can be set aside for, in order of precedence."""
 
 
 def limit(section: Section, name: str) -> float:

@@ -8,7 +8,9 @@ from pathlib import Path
 from typing import Literal
 
 from fieldfit.field.contract import Contract
+from fieldfit.field.log_hints import LogHints
 from fieldfit.field.outlook import Changes, Outlook
+from fieldfit.field.raw_signal import RawSignal
 from fieldfit.field.uncertain import Accuracy, Uncertain
 from fieldfit.hydraulics.liquids import Liquid
 
@@ -27,6 +29,12 @@ class Meter:
     """What it measures: a velocity meter computed its flow with the same bore."""
     unit: str | None = None
     """Unit that overrules the heading."""
+    signal: RawSignal | None = None
+    """Raw signal that its column holds; None for readings."""
+    totaliser: bool | None = None
+    """Whether its column counts on from row to row; None where the log shows it."""
+    pulse_m3: float | None = None
+    """Volume of one pulse [m³]; None where the column counts no pulses."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,6 +53,8 @@ class Tap:
     """Serial of the gauge."""
     unit: str | None = None
     """Unit that overrules the heading."""
+    signal: RawSignal | None = None
+    """Raw signal that its column holds; None for readings."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -187,8 +197,12 @@ class Section:
     """What something other than friction says of the bore."""
     deposit: Deposit = field(default_factory=Deposit)
     """What is known of a deposit."""
+    log_hints: LogHints = field(default_factory=LogHints)
+    """How its logs are written."""
     screen_limits: tuple[tuple[str, float], ...] = ()
     """Limits of screens that the file changes, by name [SI]."""
+    screen_mode: Literal["plateaus", "service"] | None = None
+    """How logs are to be read; None to decide by rule."""
     contract: Contract | None = None
     """What a contract asks of the pipe."""
     assumed: tuple[str, ...] = ()
