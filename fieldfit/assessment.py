@@ -10,8 +10,10 @@ import numpy as np
 
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.errors import InputError
+from fieldfit.field.dead_taps import DEAD_TAP, bridge_dead_taps, without_dead_taps
 from fieldfit.field.log_file import read_log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
+from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_readings
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section
@@ -58,11 +60,12 @@ def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFin
 def assess_campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
     """Take one log from its rows to what is found of each reach."""
     log = read_log(path, section)
-    screening = screen(log, section)
-    plateaus = summarise(log, screening, section, _weight(section))
+    bridged, dead = bridge_dead_taps(log, section)
+    screening = screen(bridged, section)
+    plateaus = without_dead_taps(summarise(bridged, screening, section, _weight(section)), screening, dead)
     readings = [reach_readings(plateaus, section, reach) for reach in range(len(section.taps) - 1)]
     screening = set_plateaus_aside(screening, _of_no_reach(readings))
-    reaches = tuple(_assess_reach(section, of_reach) for of_reach in readings)
+    reaches = tuple(_assess_reach(section_of_reach(section, k), of_reach) for k, of_reach in enumerate(readings))
     return CampaignFinding(
         date=date or (log.start.date() if log.start else None),
         log=log,
@@ -100,7 +103,9 @@ def _weight(section: Section) -> float:
 def _of_no_reach(readings: list[ReachReadings]) -> dict[int, str]:
     """Return the plateaus that no reach can use, with the first reach's reason."""
     reasons = [dict(of_reach.set_aside) for of_reach in readings]
-    return {number: why for number, why in reasons[0].items() if all(number in other for other in reasons)}
+    of_none = {number: why for number, why in reasons[0].items() if all(number in other for other in reasons)}
+    # Where a tap was dead, the reach across it may still be known.
+    return {number: why for number, why in of_none.items() if all(other[number] != DEAD_TAP for other in reasons)}
 
 
 def _assess_reach(section: Section, readings: ReachReadings) -> ReachFinding:
