@@ -26,9 +26,10 @@ _ENDS = ("min", "minimum", "max", "maximum", "range", "std", "stdev", "std dev",
 SUMMARY_WORDS = (*_MEANS, *_ENDS)
 """What stands at the beginning of a row that is no reading, without capitals."""
 
-_MARKS_AS_WRITTEN = sorted(
+MARKS_AS_WRITTEN = sorted(
     {case(mark) for mark in MISSING_MARKS for case in (str, str.upper, str.capitalize)} | {"NaN"}
 )
+"""The same with the capitals they usually come in."""
 _NUMBER = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
 _COMMA_NUMBER = re.compile(r"[+-]?[0-9]+,[0-9]+")
 _ANY_COMMA = re.compile(r"[+-]?[0-9.' ]*,[0-9.,]*")
@@ -127,7 +128,7 @@ def _table(source: LogSource, form: Form, numbers_as: str) -> DataFrame:
                 index_col=False,
                 dtype=kinds,
                 keep_default_na=False,
-                na_values=_MARKS_AS_WRITTEN,
+                na_values=MARKS_AS_WRITTEN,
                 skip_blank_lines=False,
                 skipinitialspace=True,
             )
