@@ -26,6 +26,7 @@ _ABOUT = {
     "bore_evidence": "What something other than friction says of the bore today: one such table each.",
     "deposit": "What is known of a deposit, for its volume and mass.",
     "campaign": "A day of testing and its log: one such table each. Not needed when the log is named in the command.",
+    "log": "How the logs are written, where they leave it open.",
     "contract": "What a contract asks of the pipe, for fieldfit accept: one of c, roughness and head_loss.",
     "duty": "What the pipe must carry.",
     "water": "What the water is like: it tells how fast a pipe roughens when there is one campaign only.",

@@ -259,6 +259,9 @@ def resolve_unit(wanted: Wanted, heading: str, its_unit: str | None, said: list[
             _say_if_overruled(wanted, its_unit, used, said)
     except InputError as error:
         raise error.at(place) from None
+    if used.absolute:
+        seen = f"unit '{shown(used.spelling)}' is an absolute pressure, and fieldfit reads gauges"
+        raise InputError(seen, "Take the air pressure off and write a gauge pressure.", place)
     if used.remark:
         said.append(used.remark)
     return used

@@ -183,9 +183,13 @@ def _parted(text: str, dimension: Dimension, example: str) -> tuple[float, Unit]
         raise InputError(f"'{shown(text)}' has no unit", f'Write it with its unit, such as "{example}".')
     number = _number(found[1])
     try:
-        return number, unit(found[2], dimension)
+        its_unit = unit(found[2], dimension)
     except InputError as error:
         raise InputError(error.seen, f'{error.do} Write it like "{example}".') from None
+    if its_unit.absolute:
+        seen = f"'{shown(text)}' is an absolute pressure, where one over the air's or a difference is wanted"
+        raise InputError(seen, f'Write it like "{example}".')
+    return number, its_unit
 
 
 def _number(text: str) -> float:

@@ -11,6 +11,7 @@ from fieldfit.field.quantities import quantity
 from fieldfit.field.section import Campaign, Correlation, Fitting, Section, Tap
 from fieldfit.field.section_bore_evidence import read_bore_evidence, read_deposit
 from fieldfit.field.section_contract import read_contract
+from fieldfit.field.section_log import read_log_hints
 from fieldfit.field.section_outlook import read_changes, read_cleaned, read_outlook
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
 from fieldfit.field.section_survey import read_branches, read_meter_station, read_reach_pipes
@@ -83,6 +84,7 @@ def read_section(path: str | Path) -> Section:
         meter_station_m=meter_station,
         bore_evidence=read_bore_evidence(top.tables("bore_evidence"), taps),
         deposit=read_deposit(top.table("deposit")),
+        log_hints=read_log_hints(top.table("log")),
         screen_limits=_screen_limits(top.table("screen")),
         contract=read_contract(top.table("contract")),
         assumed=tuple(dict.fromkeys(said)),

@@ -55,12 +55,18 @@ KEYS: tuple[Key, ...] = (
     _key("flow.accuracy", '"0.5 % of reading"', "how far the meter may be off", required=True),
     _key("flow.meter", '"MAG-118"', "serial; campaigns that name the same meter share its error"),
     _key("flow.senses", '"volume"', '"velocity" for clamp-on and insertion meters that use the same bore'),
+    _key("flow.totaliser", "true", "whether the column counts on from row to row, or false for the volume of each row"),
+    _key("flow.pulse", '"10 L"', "volume of one pulse, where the column counts pulses"),
+    _key("flow.signal", '"4-20 mA"', "raw signal of that column: 4-20 mA, 0-20 mA, 0-10 V, 2-10 V, 1-5 V or 0-5 V"),
+    _key("flow.range", '"0 to 50 L/s"', "what that signal stands for at its ends"),
     _key("flow.station", '"0 m"', "where the meter stands along the pipe; needed only with branches above it"),
     _key("tap.column", '"upstream"', "heading in the log, without its unit", required=True),
     _key("tap.unit", '"kPa"', "unit of that column; it wins over the heading's"),
     _key("tap.station", '"38.2 m ± 0.1 m"', "distance along the pipe, with the flow, and its limit", required=True),
     _key("tap.elevation", '"1.20 m ± 0.02 m"', "of the gauge over any datum, and its limit"),
     _key("tap.accuracy", '"0.25 % of 10 bar"', "how far the gauge may be off", required=True),
+    _key("tap.signal", '"4-20 mA"', "raw signal of that column, as for the flow"),
+    _key("tap.range", '"0 to 10 bar"', "what that signal stands for at its ends; bara for absolute pressure"),
     _key("tap.gauge", '"PG-07"', "serial of the gauge"),
     _key("fitting.name", '"two long-radius bends"', "printed name"),
     _key("fitting.k", '"0.5 ± 20 %"', "loss coefficient of one, on the velocity in the pipe; this or kind"),
@@ -123,6 +129,12 @@ KEYS: tuple[Key, ...] = (
     _key(
         "contract.built", '"145 ± 8"', "what is usually built, on the limit's scale; for the risks over many hand-overs"
     ),
+    _key("log.dates", '"day first"', "order of day and month in a log's dates, where they may be read in two ways"),
+    _key("log.decimal", '"comma"', "decimal mark, where commas may also part thousands; else point"),
+    _key("log.start", "2026-05-12T08:00:00", "time of the first row, for a log without a clock"),
+    _key("log.interval", '"10 s"', "time from row to row, for a log without a clock"),
+    _key("log.sheet", '"Readings"', "sheet of a workbook; the first that has the headings when left out"),
+    _key("log.barometer", '"1013 hPa"', "pressure of the air at the pipe for absolute gauges, or its heading"),
     _key("duty.flow", '"3.0 L/s"', "flow the pipe must carry", required=True),
     _key("duty.head", '"15 m"', "head available over the section, for its capacity"),
     _key("water.langelier", "-1.3", "Langelier index of the water, for a published growth rate"),
@@ -140,7 +152,7 @@ KEYS: tuple[Key, ...] = (
 )
 """Every key, table by table."""
 
-TABLES = ("flow", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
+TABLES = ("flow", "log", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
 """Tables that may stand once."""
 LISTS = ("tap", "fitting", "reach", "branch", "bore_evidence", "campaign")
 """Tables that may stand several times."""

@@ -4,17 +4,19 @@ from __future__ import annotations
 
 import itertools
 import math
+import re
 from dataclasses import replace
 from typing import Literal
 
 from fieldfit.errors import InputError, near_miss
 from fieldfit.field.accuracy import accuracy, accuracy_remark
-from fieldfit.field.quantities import remarks, uncertain
+from fieldfit.field.quantities import quantity, remarks, uncertain
 from fieldfit.field.section import Meter, Tap
+from fieldfit.field.section_log import read_signal
 from fieldfit.field.toml_table import TomlTable
 from fieldfit.field.uncertain import Accuracy, Uncertain
 from fieldfit.field.unit_spellings import Dimension
-from fieldfit.field.units import shown, unit
+from fieldfit.field.units import is_unit, shown, unit
 
 LENGTH_LIMIT = 0.005
 """Limit of a distance between taps that nothing is said of, as a share of it."""
@@ -45,7 +47,10 @@ def read_meter(table: TomlTable, said: list[str]) -> Meter:
         accuracy=_accuracy(table, "flow", said),
         serial=table.text("meter"),
         senses=_senses(table),
-        unit=_unit(table, "flow"),
+        unit=_flow_unit(table),
+        signal=read_signal(table, ("flow", "velocity")),
+        totaliser=table.flag("totaliser") if "totaliser" in table.values else None,
+        pulse_m3=_pulse(table, said),
     )
 
 
@@ -117,6 +122,29 @@ def _unit(table: TomlTable, dimension: Dimension) -> str | None:
     return text
 
 
+def _flow_unit(table: TomlTable) -> str | None:
+    """Return the unit of the flow's column: of flow, of a volume that is counted, or of a velocity."""
+    text = table.text("unit")
+    if text is not None and not is_unit(text, "volume") and not is_unit(text, "velocity"):
+        return _unit(table, "flow")
+    return text
+
+
+def _pulse(table: TomlTable, said: list[str]) -> float | None:
+    """Return the volume of one pulse [m³]."""
+    text = table.text("pulse")
+    if text is None:
+        return None
+    with table.at("pulse"):
+        volume = quantity(re.sub(r"\s*(?:/|per)\s*(?:pulse|imp|p)$", "", text), "volume", "10 L")
+        if volume <= 0.0:
+            raise InputError(f"the pulse '{shown(text)}' is not positive", 'Write it like "10 L".')
+        if "signal" in table.values:
+            raise InputError("a raw signal has no pulses", "Take out pulse, or signal and range.")
+        said += remarks(text, "volume")
+    return volume
+
+
 def _senses(table: TomlTable) -> Literal["volume", "velocity"]:
     """Return what the meter measures."""
     text = table.text("senses") or "volume"
@@ -149,6 +177,7 @@ def _tap(table: TomlTable, said: list[str]) -> Tap:
         accuracy=_accuracy(table, "pressure", said),
         gauge=table.text("gauge"),
         unit=_unit(table, "pressure"),
+        signal=read_signal(table, ("pressure",)),
     )
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from itertools import product
 from typing import Literal
@@ -10,6 +11,7 @@ Dimension = Literal[
     "length",
     "pressure",
     "flow",
+    "volume",
     "temperature",
     "density",
     "dynamic viscosity",
@@ -52,6 +54,7 @@ SI: Mapping[Dimension, str] = {
     "length": "meter",
     "pressure": "pascal",
     "flow": "meter ** 3 / second",
+    "volume": "meter ** 3",
     "temperature": "celsius",
     "density": "kilogram / meter ** 3",
     "dynamic viscosity": "pascal * second",
@@ -68,12 +71,14 @@ _TIMES = {
     "day": "d day days",
 }
 _VOLUMES = {
-    "liter": "L l litre litres liter liters ltr",
-    "meter ** 3": "m3 cum",
-    "foot ** 3": "ft3 cuft cf",
+    "liter": "L l litre litres liter liters ltr lt lit",
+    "meter ** 3": "m3 cum cbm cubicmetres cubicmeters",
+    "foot ** 3": "ft3 cuft cf cubicfeet",
     "gallon": "gal gals gallon gallons",
-    "us_gallon": "USgal USgallon USgallons",
-    "imperial_gallon": "impgal imp.gal imperialgallon imperialgallons imperialgal UKgal igal",
+    "1000 * gallon": "kgal",
+    "us_gallon": "USgal USG USgals USgallon USgallons",
+    "imperial_gallon": "impgal imp.gal imperialgallon imperialgallons imperialgal impgals impgallon impgallons UKgal UKgals igal",
+    "1000 * liter": "kL kl KL kilolitre kilolitres",
     "1e6 * liter": "ML Ml megalitre megalitres",
     "1e6 * gallon": "Mgal milliongallons",
     "0.001 * liter": "mL ml cm3 cc",
@@ -89,45 +94,49 @@ _LENGTHS = {
     "mile": "mi mile miles",
 }
 _PRESSURES = {
-    "psi": "psi psig lb/in2 lbf/in2 lbs/in2 lb/sqin lbf/sqin",
+    "psi": "psi psig lb/in2 lbf/in2 lbs/in2 lb/sqin lbf/sqin p.s.i.",
     "bar": "bar barg bars",
     "0.001 * bar": "mbar mbarg",
     "pascal": "Pa",
     "100 * pascal": "hPa",
     "1000 * pascal": "kPa kPag",
     "1e6 * pascal": "MPa MPag",
-    "kilogram * gravity / (0.01 * meter) ** 2": "kg/cm2 kgf/cm2 kp/cm2 kg/sqcm kgf/sqcm kg/cm2g",
-    "meter * water": "mH2O mWC mWG mofwater m.w.c. m.w.g. mwatercolumn mhead",
+    "kilogram * gravity / (0.01 * meter) ** 2": "kg/cm2 kgf/cm2 kp/cm2 kg/sqcm kgf/sqcm kg/cm2g kgf/cm2g at",
+    "101325 * pascal": "atm",
+    "meter * water": "mH2O mWC mWG mofwater m.w.c. m.w.g. mwatercolumn mhead mCE mCA mWS mwater",
     "0.01 * meter * water": "cmH2O cmWC",
     "0.001 * meter * water": "mmH2O mmWC mmWG",
-    "foot * water": "ftH2O ftWC ftofwater feetofwater fthead",
+    "foot * water": "ftH2O ftWC ftofwater feetofwater fthead ftwater ftofhead",
     "inch * water": "inH2O inWC inWG inchesofwater",
-    "inch * mercury": "inHg",
-    "0.001 * meter * mercury": "mmHg",
+    "inch * mercury": "inHg inHgg inofmercury inchesofmercury",
+    "0.001 * meter * mercury": "mmHg mmHgg torr",
 }
 _FLOW_SHORT = {
-    "liter / second": "lps",
-    "liter / minute": "lpm",
+    "liter / second": "lps l.p.s.",
+    "liter / minute": "lpm l.p.m.",
     "liter / hour": "lph",
-    "meter ** 3 / hour": "cmh",
+    "meter ** 3 / hour": "cmh m3ph",
     "foot ** 3 / second": "cfs cusec cusecs",
     "foot ** 3 / minute": "cfm",
-    "gallon / minute": "gpm",
+    "gallon / minute": "gpm galpm g.p.m.",
     "gallon / hour": "gph",
     "gallon / day": "gpd",
     "1e6 * gallon / day": "MGD",
     "us_gallon / minute": "USgpm gpm(US) gpmUS",
+    "us_gallon / hour": "USgph",
     "us_gallon / day": "USgpd",
     "1e6 * us_gallon / day": "USMGD MGD(US)",
     "imperial_gallon / minute": "igpm imperialgpm impgpm UKgpm gpm(imperial) gpm(imp) gpm(UK)",
-    "imperial_gallon / day": "igpd imperialgpd UKgpd",
-    "1e6 * imperial_gallon / day": "IMGD imperialMGD UKMGD MIGD",
+    "imperial_gallon / hour": "igph imperialgph impgph UKgph",
+    "imperial_gallon / day": "igpd imperialgpd impgpd UKgpd",
+    "1e6 * imperial_gallon / day": "IMGD imperialMGD impMGD UKMGD MIGD",
     "1e6 * liter / day": "MLD",
+    "1000 * liter / day": "kLD",
 }
 _OTHERS: Mapping[Dimension, Mapping[str, str]] = {
     "temperature": {
-        "celsius": "degC °C C celsius degreeC degreesC degreescelsius",
-        "fahrenheit": "degF °F F fahrenheit degreeF degreesF degreesfahrenheit",
+        "celsius": "degC °C C celsius degreeC degreesC degreescelsius oC",
+        "fahrenheit": "degF °F F fahrenheit degreeF degreesF degreesfahrenheit oF",
         "kelvin": "K kelvin kelvins degK",
     },
     "density": {
@@ -162,27 +171,28 @@ _OTHERS: Mapping[Dimension, Mapping[str, str]] = {
     },
 }
 
-_NOT_GAUGE = "is an absolute pressure, and fieldfit reads gauges"
-_GAUGE = "Take the air pressure off and write a gauge pressure"
+ABSOLUTE = re.compile(r"(?i)(.+?)(?:\(a\)|[-,]?\(?abs(?:olute)?\.?\)?|a)")
+"""A spelling of an absolute pressure: that of the gauge pressure, and what stands behind it."""
 TRAPS: Mapping[Dimension, Mapping[str, tuple[str, str]]] = {
     "pressure": {
         "mPa": ("is thousandths of a pascal", "Write MPa for millions of pascals, or kPa"),
         "mpa": ("may be millions or thousandths of a pascal", "Write MPa for millions of pascals, or kPa"),
         "m": ("is a length", "Write mH2O for metres of water"),
         "ft": ("is a length", "Write ftH2O for feet of water"),
-        **{unit: (_NOT_GAUGE, _GAUGE) for unit in ("psia", "bara", "kPaa", "kPaabs", "MPaa", "baraabs", "psiabs")},
     },
     "flow": {
         f"{litres}/{day}": ("may be millions or thousandths of a litre", "Write ML/d for megalitres a day")
         for litres in ("ml", "mL")
         for day in ("d", "day")
     },
+    "volume": {"ml": ("may be millions or thousandths of a litre", "Write ML for megalitres")},
 }
 
 OFFERED: Mapping[Dimension, tuple[str, ...]] = {
     "length": ("mm", "cm", "m", "km", "in", "ft"),
     "pressure": ("psi", "bar", "kPa", "MPa", "kg/cm2", "mH2O", "ftH2O", "inHg"),
     "flow": ("L/s", "L/min", "m3/h", "ML/d", "gpm", "imperial gpm", "MGD", "ft3/s"),
+    "volume": ("L", "m3", "kL", "ML", "gal", "imperial gal", "ft3"),
     "temperature": ("degC", "degF", "K"),
     "density": ("kg/m3", "g/cm3", "lb/ft3"),
     "dynamic viscosity": ("cP", "mPa s", "Pa s"),
@@ -201,6 +211,7 @@ LARGEST: Mapping[Dimension, float] = {
     "length": 1e7,
     "pressure": 1e10,
     "flow": 1e6,
+    "volume": 1e12,
     "temperature": 2000.0,
     "density": 1e5,
     "dynamic viscosity": 1e6,
@@ -221,5 +232,10 @@ def spellings(dimension: Dimension) -> Mapping[str, str]:
             for (volume, volumes), (time, times) in pairs
         }
         return {key: f"{built.get(key, '')} {_FLOW_SHORT.get(key, '')}" for key in [*built, *_FLOW_SHORT]}
-    simple: Mapping[Dimension, Mapping[str, str]] = {"length": _LENGTHS, "pressure": _PRESSURES, "duration": _TIMES}
+    simple: Mapping[Dimension, Mapping[str, str]] = {
+        "length": _LENGTHS,
+        "pressure": _PRESSURES,
+        "duration": _TIMES,
+        "volume": _VOLUMES,
+    }
     return simple.get(dimension) or _OTHERS[dimension]

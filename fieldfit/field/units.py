@@ -8,10 +8,12 @@ from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from fieldfit.errors import InputError, near_miss
-from fieldfit.field.unit_spellings import DEFINITIONS, OFFERED, SI, SIGNS, TRAPS, Dimension, spellings
+from fieldfit.field.unit_spellings import ABSOLUTE, DEFINITIONS, OFFERED, SI, SIGNS, TRAPS, Dimension, spellings
 
 if TYPE_CHECKING:
     from pint import UnitRegistry
+
+_GALLONS_OF = re.compile(r"(?i)^(gal\w*|gpm|gph|gpd|mgd)(/\w+)?\(?(us|imp|imperial|uk)\)?$")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -24,6 +26,8 @@ class Unit:
     """SI units in one of it; for temperature, kelvins in one degree."""
     offset: float
     """SI value of zero; not zero for temperatures only, which come out in °C."""
+    absolute: bool = False
+    """Whether it counts a pressure from the void, not from the air around."""
     remark: str = ""
     """Sentence on what was taken for granted; empty when the spelling leaves nothing open."""
 
@@ -56,13 +60,20 @@ def unit(text: str, dimension: Dimension) -> Unit:
     trap = TRAPS.get(dimension, {}).get(key)
     if trap:
         raise InputError(f"unit '{shown(text)}' {trap[0]}", f"{trap[1]}.")
-    expression = _expression(key, dimension)
+    gauge = _gauge_key(key) if dimension == "pressure" else None
+    expression = _expression(gauge or key, dimension)
     if expression is None:
         raise _no_such_unit(text, key, dimension)
     factor, offset = _to_si(expression, dimension)
     bare_gallon = "gallon" in expression.replace("us_gallon", "").replace("imperial_gallon", "")
     remark = f"'{text.strip()}' was taken as US gallons (3.785 L); write imperial gpm or UK gal for the other."
-    return Unit(spelling=text.strip(), factor=factor, offset=offset, remark=remark if bare_gallon else "")
+    return Unit(
+        spelling=text.strip(),
+        factor=factor,
+        offset=offset,
+        absolute=gauge is not None,
+        remark=remark if bare_gallon else "",
+    )
 
 
 def is_unit(text: str, dimension: Dimension) -> bool:
@@ -74,13 +85,26 @@ def is_unit(text: str, dimension: Dimension) -> bool:
     (True, False)
     """
     key = _folded_signs(text)
+    if dimension == "pressure" and _gauge_key(key) is not None:
+        return True
     return key in TRAPS.get(dimension, {}) or _expression(key, dimension) is not None
+
+
+def _gauge_key(key: str) -> str | None:
+    """Return the spelling of the gauge pressure in a unit of absolute pressure, None for any other unit."""
+    if _expression(key, "pressure") is not None:
+        return None
+    found = ABSOLUTE.fullmatch(key)
+    plain = found is not None and not re.search(r"(?i)g$|gauge", found[1].removesuffix("Hg"))
+    return found[1] if found and plain and _expression(found[1], "pressure") is not None else None
 
 
 def _folded_signs(text: str) -> str:
     """Return a spelling without spaces, superscripts and product dots."""
     key = text.strip().replace(" per ", "/").translate(SIGNS)
     key = re.sub(r"(?i)(?:\(g\)|\(?gauge\)?)$", "g", key)
+    key = re.sub(r"(?i)\b(imp|cu|deg)\.", r"\1", key)
+    key = _GALLONS_OF.sub(r"\3\1\2", key)
     for time in ("s", "min", "h", "d"):
         if key.endswith(f"{time}-1"):
             key = f"{key.removesuffix(f'{time}-1')}/{time}"

@@ -153,7 +153,7 @@ def test_lengths_as_a_fitter_writes_them(text, metres):
         ("", "length", "nothing is written"),
         ("12 kPa", "length", "unit 'kPa' measures pressure, where length is wanted"),
         ("12 m", "pressure", "unit 'm' is a length"),
-        ("12 psia", "pressure", "unit 'psia' is an absolute pressure"),
+        ("12 psia", "pressure", "'12 psia' is an absolute pressure"),
         ("12 mPa", "pressure", "unit 'mPa' is thousandths of a pascal"),
         ("12 mpa", "pressure", "unit 'mpa' may be millions or thousandths of a pascal"),
         ("12 ml/d", "flow", "unit 'ml/d' may be millions or thousandths of a litre"),

@@ -262,6 +262,9 @@ def test_lines_are_found_in_dotted_and_inline_tables(read):
         read(TOP + 'fluid = { density = "870", viscosity = "32 cSt" }\n' + FLOW + UPPER + LOWER)
 
 
+FLOW_KEYS = {"pipe": ("signal", "range"), "bore": ("unit", "pulse")}
+
+
 def test_the_examples_in_the_list_of_keys_are_right(read):
     """Every example that errors and the blank file show is itself accepted."""
     from fieldfit.field.section_keys import KEYS
@@ -269,17 +272,20 @@ def test_the_examples_in_the_list_of_keys_are_right(read):
     def lines(table, skip=()):
         return "".join(f"{key.line}\n" for key in KEYS if key.table == table and key.name not in skip)
 
-    taps = f"[[tap]]\n{lines('tap')}[[tap]]\n{lines('tap')}".replace('"38.2 m ± 0.1 m"', '"0 m"', 1).replace(
-        "upstream", "u", 1
-    )
-    rest = "".join(f"[{t}]\n{lines(t)}" for t in ("flow", "duty", "correlation", "screen"))
+    plain, raw = lines("tap", ["signal", "range"]), lines("tap", ["unit"])
+    taps = f"[[tap]]\n{plain}[[tap]]\n{raw}".replace('"38.2 m ± 0.1 m"', '"0 m"', 1).replace("upstream", "u", 1)
+    rest = "".join(f"[{t}]\n{lines(t)}" for t in ("log", "duty", "correlation", "screen"))
+    meter = {one: f"[flow]\n{lines('flow', skip)}" for one, skip in FLOW_KEYS.items()}
     fittings = f"[[fitting]]\n{lines('fitting', ['kind'])}[[fitting]]\n{lines('fitting', ['k'])}[[campaign]]\n{lines('campaign')}"
     coupon = f"[[bore_evidence]]\n{lines('bore_evidence', ['time', 'flow', 'length'])}"
     tracer = "[[bore_evidence]]\n" + lines("bore_evidence", ["bore"]).replace('"coupon"', '"tracer"')
     fittings += f"[[reach]]\n{lines('reach', ['pipe'])}[[branch]]\n{lines('branch')}{coupon}{tracer}[deposit]\n{lines('deposit')}"
     fittings = fittings.replace('from = "upstream"', 'from = "u"').replace('to = "downstream"', 'to = "upstream"')
     for one, other in (("pipe", "bore"), ("bore", "pipe")):
-        section = read(lines("", [one]) + rest + taps + fittings)
+        section = read(lines("", [one]) + meter[one] + rest + taps + fittings)
         assert (section.name, len(section.fittings)) == ("Kiln cooling supply", 2), other
-    assert read(lines("", ["pipe", "fluid"]) + f"[fluid]\n{lines('fluid')}" + rest + taps).liquid.name == "gear oil"
+    assert (
+        read(lines("", ["pipe", "fluid"]) + f"[fluid]\n{lines('fluid')}" + meter["pipe"] + rest + taps).liquid.name
+        == "gear oil"
+    )
     assert isinstance(section.path, Path)
