@@ -14,6 +14,7 @@ from fieldfit.field.section_contract import read_contract
 from fieldfit.field.section_log import read_log_hints
 from fieldfit.field.section_outlook import read_changes, read_cleaned, read_outlook
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
+from fieldfit.field.section_screen import read_screen_limits, read_screen_mode
 from fieldfit.field.section_survey import read_branches, read_meter_station, read_reach_pipes
 from fieldfit.field.section_taps import check_columns, read_meter, read_taps
 from fieldfit.field.toml_table import TomlTable, read_toml
@@ -85,7 +86,8 @@ def read_section(path: str | Path) -> Section:
         bore_evidence=read_bore_evidence(top.tables("bore_evidence"), taps),
         deposit=read_deposit(top.table("deposit")),
         log_hints=read_log_hints(top.table("log")),
-        screen_limits=_screen_limits(top.table("screen")),
+        screen_limits=read_screen_limits(top.table("screen")),
+        screen_mode=read_screen_mode(top.table("screen")),
         contract=read_contract(top.table("contract")),
         assumed=tuple(dict.fromkeys(said)),
     )
@@ -148,13 +150,6 @@ def _correlation(table: TomlTable | None) -> Correlation:
         standard=_ratio(table, "standard_uncertainty", usual.standard, (0.0, 0.5)),
         decades=_ratio(table, "decades", usual.decades, (0.1, 20.0)),
     )
-
-
-def _screen_limits(table: TomlTable | None) -> tuple[tuple[str, float], ...]:
-    """Return the limits of screens that the file changes."""
-    if table is None:
-        return ()
-    return tuple((name, _ratio(table, name, 0.0, (0.0, 1e7))) for name in table.values)
 
 
 def _ratio(table: TomlTable, key: str, usual: float, ends: tuple[float, float]) -> float:

@@ -148,6 +148,7 @@ KEYS: tuple[Key, ...] = (
     _key("threshold.by", "2035-01-01", "day that the probability of a crossing is wanted for"),
     _key("correlation.standard_uncertainty", '"5 %"', "standard uncertainty of f from a friction correlation"),
     _key("correlation.decades", "1.5", "range of Reynolds number over which its error keeps together, in decades"),
+    _key("screen.mode", '"auto"', 'how logs are read: "plateaus" for a test in steps, "service" for long service logs'),
     *(_key(f"screen.{limit.name}", f"{limit.value:g}", limit.meaning.rstrip(".")) for limit in LIMITS.values()),
 )
 """Every key, table by table."""

@@ -55,7 +55,7 @@ def test_with_every_option_taken_it_can_be_read(tmp_path):
         2,
         pytest.approx(0.003),
     )
-    assert len(section.screen_limits) == sum(key.table == "screen" for key in KEYS)
+    assert len(section.screen_limits) == sum(key.table == "screen" for key in KEYS) - 1  # all but the mode
 
 
 def test_nothing_is_overwritten(tmp_path):
