@@ -67,12 +67,12 @@ def sample_posterior(ln_likelihood: Callable[[Array], Array], dimensions: int, d
     z = rng.standard_normal((draws, dimensions))
     ln_proposal = _ln_normal(z)
     kept: list[tuple[Array, Array, float]] = []
-    best = -np.inf
+    best, power = -np.inf, 0.0
     for turn in range(ROUNDS):
         ln_target = ln_likelihood(z)
         best = max(best, float(np.max(ln_target)))
         ln_prior = _ln_normal(z) - ln_proposal
-        power = _power(ln_target, ln_prior, (FIRST_SHARE if turn == 0 else SHARE) * draws)
+        power = _power(ln_target, ln_prior, power, (FIRST_SHARE if turn == 0 else SHARE) * draws)
         ln_weight = power * ln_target + ln_prior
         weight = np.exp(ln_weight - np.max(ln_weight))
         if power >= 1.0:
@@ -83,8 +83,8 @@ def sample_posterior(ln_likelihood: Callable[[Array], Array], dimensions: int, d
     return _pooled(rng, kept or [(z, ln_target + ln_prior, _effective(weight))], draws, best)
 
 
-def _power(ln_target: Array, ln_prior: Array, wanted: float) -> float:
-    """Return the largest power of the likelihood, up to one, that leaves so many effective draws."""
+def _power(ln_target: Array, ln_prior: Array, reached: float, wanted: float) -> float:
+    """Return the largest power of the likelihood, from the one reached to one, that leaves so many effective draws."""
 
     def left(power: float) -> float:
         ln_weight = power * ln_target + ln_prior
@@ -92,12 +92,11 @@ def _power(ln_target: Array, ln_prior: Array, wanted: float) -> float:
 
     if left(1.0) >= wanted:
         return 1.0
-    low, high = 0.0, 1.0
+    low, high = reached, 1.0
     for _ in range(30):
         middle = (low + high) / 2.0
         low, high = (middle, high) if left(middle) >= wanted else (low, middle)
-    # A proposal that misses the prior's bulk would stall at zero: some step is always taken.
-    return max(low, 1e-6)
+    return low
 
 
 def _propose(rng: np.random.Generator, z: Array, weight: Array) -> tuple[Array, Array]:
