@@ -10,12 +10,13 @@ import numpy as np
 
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.errors import InputError
-from fieldfit.field.dead_taps import DEAD_TAP, bridge_dead_taps, without_dead_taps
+from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
 from fieldfit.field.log_file import read_log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
 from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_readings
 from fieldfit.field.readings import ReachReadings
+from fieldfit.field.screens import DEAD_TAP
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
 from fieldfit.field.section_outlook import section_on

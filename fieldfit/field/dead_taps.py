@@ -16,8 +16,6 @@ from fieldfit.field.section import Section
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-DEAD_TAP = "dead tap"
-"""Why a plateau carries nothing for a reach whose tap gave no reading there."""
 DEAD_ROWS = 8
 """Rows without a reading in a row from which a tap of a logger's file counts as dead; fewer are single gaps."""
 FEWEST_TAPS = 2

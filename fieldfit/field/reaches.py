@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
-from fieldfit.field.dead_taps import DEAD_TAP, alive_at, take_plateaus
+from fieldfit.field.dead_taps import alive_at, take_plateaus
 from fieldfit.field.reach_pipe import reach_flow, section_of_reach, velocity_head_drop
 from fieldfit.field.readings import Levelling, Plateaus, ReachReadings
-from fieldfit.field.screens import CRITICAL, LAMINAR, NEGATIVE, UNRESOLVED, UNSTEADY, limit
+from fieldfit.field.screens import CRITICAL, DEAD_TAP, LAMINAR, NEGATIVE, UNRESOLVED, UNSTEADY, limit
 from fieldfit.field.section import Fitting, Section, Tap
 from fieldfit.field.uncertain import Uncertain
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
@@ -44,7 +45,84 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
         When there is neither a static nor a surveyed elevation, or a fitting's place is needed and missing.
     """
     upstream, downstream = section.taps[reach], section.taps[reach + 1]
-    length = _length(upstream, downstream)
+    heads = reach_heads(plateaus, section, reach)
+    if heads.levelling is None and heads.elevation_drop is None:
+        raise InputError(
+            f"the gauges at '{upstream.column}' and '{downstream.column}' have no surveyed elevation and the log has no "
+            "static",
+            'Write elevation = "1.20 m" for both taps, or take readings with the flow stopped.',
+            section.path.name,
+        )
+    section = section_of_reach(section, reach)
+    plateaus, head, random, reasons = heads.plateaus, heads.head_loss_m, heads.random_m, heads.reason
+    keep = ~plateaus.static & (reasons == "")
+    temperature = plateaus.temperature_degc[keep]
+    return ReachReadings(
+        upstream=upstream,
+        downstream=downstream,
+        meter=section.meter,
+        length=_length(upstream, downstream),
+        bore=section.bore,
+        fitting_k=_fitting_k(section, reach),
+        elevation_drop=heads.elevation_drop,
+        levelling=heads.levelling,
+        number=plateaus.number[keep],
+        flow_m3_s=plateaus.flow_m3_s[keep],
+        head_loss_m=head[keep],
+        random_m=random[keep],
+        pressure_pa=plateaus.pressure_pa[reach : reach + 2, keep],
+        temperature_degc=temperature,
+        density_kg_m3=section.liquid.density_kg_m3(temperature),
+        viscosity_m2_s=section.liquid.viscosity_m2_s(temperature),
+        viscosity_standard=viscosity_standard(section, temperature),
+        turbulent_from_m3_s=limit(section, "turbulent")
+        * np.pi
+        / 4.0
+        * section.bore.value
+        * float(np.max(section.liquid.viscosity_m2_s(plateaus.temperature_degc), initial=0.0)),
+        set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why)
+        + heads.dead,
+    )
+
+
+class ReachHeads(NamedTuple):
+    """Head losses of one reach before any plateau is set aside; K plateaus with both taps alive, statics included."""
+
+    plateaus: Plateaus
+    """The plateaus, with the reach's own flow."""
+    head_loss_m: Array
+    """(K,) head loss, levelled and without inertia [m]; by the gauges alone where nothing levels them."""
+    random_m: Array
+    """(K,) standard error, independent between plateaus [m]."""
+    standard_m: Array
+    """(K,) standard uncertainty, levelling included [m]; infinite where nothing levels the gauges."""
+    reason: NDArray[np.str_]
+    """(K,) why a flowing plateau carries no roughness, empty where it does."""
+    levelling: Levelling | None
+    """What the statics gave; None without a static."""
+    elevation_drop: Uncertain | None
+    """Upper gauge's elevation less the lower one's [m]; None when not surveyed."""
+    dead: tuple[tuple[int, str], ...]
+    """Plateaus at which a tap was dead: number and reason."""
+
+
+def reach_heads(plateaus: Plateaus, section: Section, reach: int) -> ReachHeads:
+    """Work out the head loss of one reach at every plateau, and which of them carry no roughness.
+
+    Parameters
+    ----------
+    plateaus : Plateaus
+        Plateaus of the campaign, statics included.
+    section : Section
+        The test section.
+    reach : int
+        The reach from tap `reach` to the next.
+
+    Returns
+    -------
+    ReachHeads
+    """
+    upstream, downstream = section.taps[reach], section.taps[reach + 1]
     plateaus, velocity_m, dead = _of_reach(plateaus, section, reach)
     section = section_of_reach(section, reach)
     weight = section.liquid.density_kg_m3(plateaus.temperature_degc) * STANDARD_GRAVITY
@@ -54,46 +132,20 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
     head = _head_loss(plateaus, reach, weight, drop) + velocity_m
     if levelling:
         head = head - _offsets(plateaus, head)
-    elif drop is None:
-        raise InputError(
-            f"the gauges at '{upstream.column}' and '{downstream.column}' have no surveyed elevation and the log has no "
-            "static",
-            'Write elevation = "1.20 m" for both taps, or take readings with the flow stopped.',
-            section.path.name,
-        )
-    inertia = length.value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
+    inertia = _length(upstream, downstream).value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
     head = head - inertia * plateaus.flow_slope_m3_s2
     doubt = inertia * _slope_standard(plateaus)
     random = np.hypot(random, doubt)
     standard = np.hypot(random, _level_standard(plateaus, section, reach, weight, levelling))
-    reasons = _reasons(plateaus, section, head, (standard, doubt))
-    keep = ~plateaus.static & (reasons == "")
-    temperature = plateaus.temperature_degc[keep]
-    return ReachReadings(
-        upstream=upstream,
-        downstream=downstream,
-        meter=section.meter,
-        length=length,
-        bore=section.bore,
-        fitting_k=_fitting_k(section, reach),
-        elevation_drop=drop,
+    return ReachHeads(
+        plateaus=plateaus,
+        head_loss_m=head,
+        random_m=random,
+        standard_m=standard,
+        reason=_reasons(plateaus, section, head, (standard, doubt)),
         levelling=levelling,
-        number=plateaus.number[keep],
-        flow_m3_s=plateaus.flow_m3_s[keep],
-        head_loss_m=head[keep],
-        random_m=random[keep],
-        pressure_pa=plateaus.pressure_pa[reach : reach + 2, keep],
-        temperature_degc=temperature,
-        density_kg_m3=section.liquid.density_kg_m3(temperature),
-        viscosity_m2_s=section.liquid.viscosity_m2_s(temperature),
-        viscosity_standard=_viscosity_standard(section, temperature),
-        turbulent_from_m3_s=limit(section, "turbulent")
-        * np.pi
-        / 4.0
-        * section.bore.value
-        * float(np.max(section.liquid.viscosity_m2_s(plateaus.temperature_degc), initial=0.0)),
-        set_aside=tuple((int(number), str(why)) for number, why in zip(plateaus.number, reasons, strict=True) if why)
-        + dead,
+        elevation_drop=drop,
+        dead=dead,
     )
 
 
@@ -182,7 +234,7 @@ def _level_standard(
         return np.full(len(weight), levelling.standard_m)
     drop = _elevation_drop(section.taps[reach], section.taps[reach + 1])
     gauges = _gauge_standard(section, reach, plateaus.pressure_pa[reach : reach + 2]) / weight
-    return np.asarray(np.hypot(gauges, drop.standard if drop else 0.0))
+    return np.asarray(np.hypot(gauges, drop.standard if drop else np.inf))
 
 
 def _reasons(plateaus: Plateaus, section: Section, head: Array, doubts: tuple[Array, Array]) -> NDArray[np.str_]:
@@ -229,7 +281,7 @@ def _between(fitting: Fitting, section: Section, reach: int) -> bool:
     return section.taps[reach].station.value <= fitting.station < section.taps[reach + 1].station.value
 
 
-def _viscosity_standard(section: Section, temperature: Array) -> float:
+def viscosity_standard(section: Section, temperature: Array) -> float:
     """Return the relative standard uncertainty of the viscosity, temperature included [-]."""
     if len(temperature) == 0:
         return section.liquid.viscosity_standard

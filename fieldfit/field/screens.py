@@ -124,6 +124,7 @@ LAMINAR = "laminar"
 CRITICAL = "critical zone"
 UNRESOLVED = "head loss below resolution"
 NEGATIVE = "negative head loss"
+DEAD_TAP = "dead tap"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -158,6 +159,7 @@ SCREENS: tuple[Screen, ...] = (
         limits=("flow_step", "plateau_rows", "gap", "ramp", "drift", "inertia"),
         asks="The flow is on its way, or is steady for too few rows; or its inertia cannot be corrected well.",
     ),
+    Screen(reason=DEAD_TAP, judges="plateau", limits=("stuck",), asks="One of several taps gave nothing for a while."),
     Screen(reason=LAMINAR, judges="plateau", limits=("laminar",), asks="Laminar flow does not feel the wall."),
     Screen(
         reason=CRITICAL,
