@@ -69,6 +69,27 @@ def assess(
         raise typer.Exit(NO_ANSWER)
 
 
+@app.command(epilog="Example: fieldfit accept heron-lane 2026-05-06.csv")
+def accept(
+    section: Annotated[Path, typer.Argument(help="Folder of the test section, or its section.toml with a [contract].")],
+    logs: Annotated[list[Path] | None, typer.Argument(help="Logs to use instead of the folder's own.")] = None,
+    out: Annotated[Path, typer.Option("--out", help="Folder for the certificate.")] = Path("reports"),
+) -> None:
+    """Hold a pipe as built against its contract: pass, fail, or what would decide."""
+    from fieldfit.handover import accept as run
+    from fieldfit.report.certificate import handover_summary
+    from fieldfit.report.files import write_handover
+
+    handover = run(section, *(logs or ()))
+    with _writing("--out", out):
+        written = write_handover(handover, out)
+    typer.echo(handover_summary(handover))
+    for path in written:
+        typer.echo(f"Written: {path}", err=True)
+    if handover.outcome != "pass":
+        raise typer.Exit(NO_ANSWER)
+
+
 @app.command(epilog="Example: fieldfit start kiln-supply")
 def start(
     folder: Annotated[Path, typer.Argument(help="Folder of the new test section; made when it is not there.")],

@@ -113,6 +113,13 @@ gauge = "PT-22"
 name = "bends, 45 degrees"
 k = "0.2 ± 30 %"
 count = 3
+
+[contract]
+c = 145
+flow = "25 L/s"
+temperature = "10 degC"
+rule = "guarded acceptance"
+risk = "5 %"
 """
 
 CLAY_PIT = """\

@@ -12,8 +12,9 @@ from pathlib import Path
 
 from fieldfit.report.audit import audit_csv
 from fieldfit.report.finding import Finding
+from fieldfit.report.handover import Handover
 from fieldfit.report.page import page
-from fieldfit.report.record import record_json
+from fieldfit.report.record import as_json, record, record_json
 
 LONGEST = 60
 """Longest file name made from a section's name, without its ending."""
@@ -78,7 +79,50 @@ def write_reports(finding: Finding, folder: Path) -> tuple[Path, ...]:
         texts[f"{name}-{date}-{index}-rows.csv" if file in texts else file] = audit_csv(campaign, finding.section)
     folder = Path(folder)
     folder.mkdir(parents=True, exist_ok=True)
-    return _write({folder / file: text for file, text in texts.items()})
+    return write_whole({folder / file: text for file, text in texts.items()})
+
+
+def write_handover(handover: Handover, folder: Path) -> tuple[Path, ...]:
+    """Write the certificate as a page and as PDF, and the record of the verdict.
+
+    Parameters
+    ----------
+    handover : Handover
+        What was found.
+    folder : Path
+        Where to write; made when it is missing.
+
+    Returns
+    -------
+    tuple of Path
+        Page, PDF and record.
+
+    Raises
+    ------
+    OSError
+        When the folder cannot be written; no new file is left behind.
+    """
+    from fieldfit.report.certificate import acceptance_record, certificate
+    from fieldfit.report.sheet import sheet_html
+    from fieldfit.report.sheet_pdf import sheet_pdf
+
+    name, sheet = safe_name(handover.finding.section.name), certificate(handover)
+    full = record(handover.finding)
+    full["decisions"] = (full["decisions"] or {}) | {
+        "acceptance": {
+            "outcome": handover.outcome,
+            "reaches": [acceptance_record(verdict.acceptance) for verdict in handover.verdicts],
+        }
+    }
+    folder = Path(folder)
+    folder.mkdir(parents=True, exist_ok=True)
+    return write_whole(
+        {
+            folder / f"{name}-certificate.html": sheet_html(sheet),
+            folder / f"{name}-certificate.pdf": sheet_pdf(sheet),
+            folder / f"{name}-certificate.json": as_json(full),
+        }
+    )
 
 
 def write_json(finding: Finding, path: Path) -> Path:
@@ -101,26 +145,45 @@ def write_json(finding: Finding, path: Path) -> Path:
     OSError
         When the file cannot be written.
     """
-    return _write({Path(path): record_json(finding)})[0]
+    return write_whole({Path(path): record_json(finding)})[0]
 
 
-def _write(texts: Mapping[Path, str]) -> tuple[Path, ...]:
-    """Write all texts beside their places, then move them in; a pipe or a device takes its text as it comes."""
+def write_whole(contents: Mapping[Path, str | bytes]) -> tuple[Path, ...]:
+    """Write texts and bytes beside their places, then move them in: all of them whole, or none.
+
+    A pipe or a device takes its text as it comes.
+
+    Parameters
+    ----------
+    contents : mapping of Path to str or bytes
+        What to write where; the folders must exist.
+
+    Returns
+    -------
+    tuple of Path
+        The files.
+
+    Raises
+    ------
+    OSError
+        When one of them cannot be written; no new file is left behind.
+    """
     waiting: dict[Path, Path] = {}
+    raw = {path: text.encode("utf-8") if isinstance(text, str) else text for path, text in contents.items()}
     try:
-        for path, text in texts.items():
+        for path, data in raw.items():
             if path.exists() and not path.is_file():
-                path.write_text(text, encoding="utf-8", newline="\n")
+                path.write_bytes(data)
                 continue
             waiting[path] = _beside(path)
-            waiting[path].write_text(text, encoding="utf-8", newline="\n")
+            waiting[path].write_bytes(data)
         for path, temporary in waiting.items():
             os.replace(temporary, path)
     finally:
         for temporary in waiting.values():
             with contextlib.suppress(OSError):
                 temporary.unlink(missing_ok=True)
-    return tuple(texts)
+    return tuple(contents)
 
 
 def _beside(path: Path) -> Path:

@@ -55,7 +55,12 @@ def record_json(finding: Finding) -> str:
     str
         JSON without NaN or infinity.
     """
-    return json.dumps(record(finding), ensure_ascii=False, allow_nan=False, indent=2) + "\n"
+    return as_json(record(finding))
+
+
+def as_json(data: Record) -> str:
+    """Return plain data as JSON text, ending with a line end; NaN and infinity are refused."""
+    return json.dumps(data, ensure_ascii=False, allow_nan=False, indent=2) + "\n"
 
 
 def _section(section: Section) -> Record:

@@ -52,28 +52,28 @@ def _place(campaign: CampaignFinding, reach: ReachFinding) -> str:
 def _reach(reach: ReachFinding) -> list[str]:
     wall, new = reach.wall, reach.new_pipe
     verdict = words.headline(reach)
-    lines = _line("state", f"{wall.state}: {verdict[0].lower()}{verdict[1:]}" if new else wall.state)
+    lines = folded("state", f"{wall.state}: {verdict[0].lower()}{verdict[1:]}" if new else wall.state)
     if wall.state == "no estimate":
-        lines += _line("why", words.sentence(wall.because))
-        return lines + _line("next", words.sentence(wall.advice))
+        lines += folded("why", words.sentence(wall.because))
+        return lines + folded("next", words.sentence(wall.advice))
     lines += _roughness(reach)
     c = wall.hazen_williams_c
     if c.best is not None and c.measurement is not None and c.with_correlation is not None:
-        lines += _line("Hazen-Williams C", f"{digits.value_with_band(c.best, c.measurement)}, by the readings")
+        lines += folded("Hazen-Williams C", f"{digits.value_with_band(c.best, c.measurement)}, by the readings")
         flow = f"at {digits.litres(wall.flow_m3_s)}, {digits.fixed(wall.temperature_degc, 0)} °C"
-        lines += _line("", f"{flow}, bore {words.bore_words(reach.readings)}")
+        lines += folded("", f"{flow}, bore {words.bore_words(reach.readings)}")
     if new is not None:
         low, best, high = new.head_loss_ratio
-        lines += _line(
+        lines += folded(
             "against new", f"{digits.value_with_band(best, (low, high))} times the head loss of new {new.material}"
         )
         over = f"{100.0 * (new.limit - 1.0):.0f} %"
-        lines += _line(
+        lines += folded(
             "", f"probability that it loses over {over} more than new: {digits.percent(new.probability_worse)}"
         )
     if wall.budget:
         top = sorted(wall.budget, key=lambda entry: -entry.share)[:3]
-        lines += _line("limited by", ", ".join(f"{entry.error} {digits.percent(entry.share)}" for entry in top))
+        lines += folded("limited by", ", ".join(f"{entry.error} {digits.percent(entry.share)}" for entry in top))
     return lines
 
 
@@ -84,22 +84,22 @@ def _roughness(reach: ReachFinding) -> list[str]:
     own, wide = ((low * 1e3, high * 1e3) for low, high in (band.measurement, band.with_correlation))
     if band.best is None:
         text = f"not rougher than {digits.limit(wide[1])} mm (95 %), {digits.limit(own[1])} mm by the readings alone"
-        return _line("roughness", text)
-    lines = _line("roughness", f"{digits.value_with_band(band.best * 1e3, own, 'mm')}, 95 %, by the readings alone")
-    return lines + _line("", f"{digits.span(*wide, 'mm')}, 95 %, with the limit of friction formulas")
+        return folded("roughness", text)
+    lines = folded("roughness", f"{digits.value_with_band(band.best * 1e3, own, 'mm')}, 95 %, by the readings alone")
+    return lines + folded("", f"{digits.span(*wide, 'mm')}, 95 %, with the limit of friction formulas")
 
 
 def _campaign(campaign: CampaignFinding) -> list[str]:
     screening, total = campaign.screening, campaign.log.line.size
     aside = ", ".join(f"{count} {reason}" for reason, count in screening.counts)
-    lines = _line("rows", f"{screening.used} of {total} used" + (f"; set aside: {aside}" if aside else ""))
+    lines = folded("rows", f"{screening.used} of {total} used" + (f"; set aside: {aside}" if aside else ""))
     count = len(campaign.cautions)
     if count:
-        lines += _line("cautions", f"{count}: " + "; ".join(caution.about for caution in campaign.cautions))
+        lines += folded("cautions", f"{count}: " + "; ".join(caution.about for caution in campaign.cautions))
     return lines
 
 
-def _line(name: str, text: str) -> list[str]:
+def folded(name: str, text: str) -> list[str]:
     """Return a named line, wrapped under itself."""
     return textwrap.wrap(
         text,
