@@ -89,9 +89,13 @@ def steps_left(values: Array, members: list[Rows], step: float) -> Array:
         Standard errors [same unit].
     """
     squares = np.array([float(np.sum((values[rows] - np.mean(values[rows])) ** 2)) for rows in members])
-    free = np.array([len(rows) - 1.0 for rows in members])
+    return steps_left_by(squares, np.array([len(rows) - 1.0 for rows in members]), step)
+
+
+def steps_left_by(squares: Array, free: Array, step: float) -> Array:
+    """Return the same from the (K,) sums of squares about each plateau's mean and their (K,) degrees of freedom."""
     if np.sum(free) < FEW:
-        return np.full(len(members), step / np.sqrt(12.0))
+        return np.full(len(free), step / np.sqrt(12.0))
     variance = np.minimum(squares / np.maximum(free, 1.0), np.sum(squares) / np.sum(free))
     return np.array([step_standard(float(own), step) for own in variance])
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import NamedTuple
 
 import numpy as np
@@ -24,6 +25,21 @@ class MeanNoise(NamedTuple):
     """(K,) rows that count as independent [-]."""
     curvature_pa: Array
     """(K,) mean pressure difference less the one at the mean flow [Pa]."""
+
+
+class RowSums(NamedTuple):
+    """Sums over the rows of each plateau, about its means; K plateaus."""
+
+    rows: Array
+    """(K,) rows."""
+    mean_flow: Array
+    """(K,) mean flow [m³/s]."""
+    flows: Array
+    """(K,) sum of the squared flow [m⁶/s²]."""
+    products: Array
+    """(K,) sum of flow times pressure difference [Pa m³/s]."""
+    differences: Array
+    """(K,) sum of the squared pressure difference [Pa²]."""
 
 
 def noise_of_mean(log: Log, members: list[Rows], reach: int, slopes: Array) -> MeanNoise:
@@ -49,23 +65,50 @@ def noise_of_mean(log: Log, members: list[Rows], reach: int, slopes: Array) -> M
     -------
     MeanNoise
     """
-    residuals, curved = [], []
+    residuals, squares = [], []
     for rows, slope in zip(members, slopes, strict=True):
         flow = log.flow_m3_s[rows] - np.mean(log.flow_m3_s[rows])
         difference = log.pressure_pa[reach, rows] - log.pressure_pa[reach + 1, rows]
         difference = difference - np.mean(difference)
         residuals.append(difference - slope * flow)
-        curved.append(curvature(flow, difference, slope, float(np.mean(log.flow_m3_s[rows]))))
-    memory = autocorrelation_time(residuals)
-    count = np.array([len(rows) for rows in members], dtype=np.float64)
-    independent = np.maximum(count / memory, 1.0)
-    spread = np.array([float(np.sum(part**2)) for part in residuals]) / np.maximum(count - memory, 1.0)
+        squares.append(
+            (len(rows), np.mean(log.flow_m3_s[rows]), flow @ flow, flow @ difference, difference @ difference)
+        )
+    sums = RowSums(*np.array(squares, dtype=np.float64).reshape(-1, 5).T)
+    return noise_from_sums(sums, slopes, autocorrelation_time(residuals), step_variance(log, members, reach, slopes))
+
+
+def noise_from_sums(sums: RowSums, slopes: Array, memory: float, steps: Array) -> MeanNoise:
+    """Return the noise of each mean pressure difference from sums over its rows.
+
+    Parameters
+    ----------
+    sums : RowSums
+        Of K plateaus.
+    slopes : (K,) array
+        Change of the pressure difference with flow at each plateau [Pa s/m³].
+    memory : float
+        Rows that are worth one independent row [-].
+    steps : (K,) array
+        Variance that the steps of the columns leave in each mean [Pa²].
+
+    Returns
+    -------
+    MeanNoise
+    """
+    independent = np.maximum(sums.rows / memory, 1.0)
+    residual = sums.differences - 2.0 * slopes * sums.products + slopes**2 * sums.flows
+    spread = np.maximum(residual, 0.0) / np.maximum(sums.rows - memory, 1.0)
     for kind in (slopes == 0.0, slopes != 0.0):
         # Statics are quieter than flow, so the two are not pooled.
         spread[kind] = pooled_variance(spread[kind], np.maximum(independent[kind] - 1.0, 1.0))
-    return MeanNoise(
-        np.sqrt(spread / independent + step_variance(log, members, reach, slopes)), independent, np.array(curved)
-    )
+    curved = [
+        _curvature(product / rows, flow / rows, slope, mean)
+        for rows, mean, flow, product, slope in zip(
+            sums.rows, sums.mean_flow, sums.flows, sums.products, slopes, strict=True
+        )
+    ]
+    return MeanNoise(np.sqrt(spread / independent + steps), independent, np.array(curved))
 
 
 def step_variance(log: Log, members: list[Rows], reach: int, slopes: Array) -> Array:
@@ -83,11 +126,14 @@ def curvature(flow: Array, difference: Array, slope: float, mean_flow: float) ->
     The covariance of flow and difference over the slope is that variance without the meter's own noise, so that
     the slope drops out.
     """
+    return _curvature(float(np.mean(flow * difference)), float(np.mean(flow**2)), slope, mean_flow)
+
+
+def _curvature(covariance: float, variance: float, slope: float, mean_flow: float) -> float:
+    """Return the same from the covariance with the difference and the variance of the flow."""
     if slope <= 0.0 or mean_flow == 0.0:
         return 0.0
-    covariance = float(np.mean(flow * difference))
-    ceiling = slope * float(np.mean(flow**2))
-    return 0.45 / mean_flow * float(np.clip(covariance, 0.0, ceiling))
+    return 0.45 / mean_flow * float(np.clip(covariance, 0.0, slope * variance))
 
 
 def autocorrelation_time(series: list[Array]) -> float:
@@ -106,22 +152,46 @@ def autocorrelation_time(series: list[Array]) -> float:
     variance = sum(float(part @ part) for part in centred)
     if variance <= 0.0:
         return 1.0
-    lengths = np.array([len(part) for part in centred])
+    found: list[float] = []
+
+    def alike(lag: int) -> float:
+        """Return the pooled autocorrelation of rows so far apart."""
+        while len(found) < lag:
+            apart = len(found) + 1
+            products = (
+                float(part[apart:] @ part[:-apart]) * len(part) / (len(part) - apart)
+                for part in centred
+                if len(part) > apart
+            )
+            found.append(sum(products) / variance)
+        return found[lag - 1]
+
+    return integrated_time(alike, np.array([len(part) for part in centred]))
+
+
+def integrated_time(alike: Callable[[int], float], lengths: Rows) -> float:
+    """Return the integrated autocorrelation time [rows] from autocorrelations by distance in rows.
+
+    Parameters
+    ----------
+    alike : callable
+        Pooled autocorrelation at a distance of 1, 2, … rows.
+    lengths : array of int
+        Rows of each series.
+    """
+    mean = float(np.mean(lengths))
     lost, time = 0.0, 1.0
     for _ in range(3):
-        time = _windowed_time(centred, variance, lost)
-        lost = time / float(np.mean(lengths))
-    return min(time, float(np.mean(lengths)) / 2.0)
+        time = _windowed_time(alike, int(np.max(lengths)) // 2, lost)
+        lost = time / mean
+    return min(time, mean / 2.0)
 
 
-def _windowed_time(centred: list[Array], variance: float, lost: float) -> float:
+def _windowed_time(alike: Callable[[int], float], farthest: int, lost: float) -> float:
     """Sum the pooled autocorrelations until the window closes."""
     time = 1.0
-    for lag in range(1, max(len(part) for part in centred) // 2):
-        covariance = sum(
-            float(part[lag:] @ part[:-lag]) * len(part) / (len(part) - lag) for part in centred if len(part) > lag
-        )
-        rho = covariance / variance
+    for lag in range(1, farthest):
+        rho = alike(lag)
         time += 2.0 * (rho + lost * (1.0 - rho))
         if lag >= 5.0 * time or rho <= 0.0:
             break
