@@ -17,7 +17,7 @@ _INTRODUCTION = f"""\
 # may be off: "52.5 mm ± 0.2 mm" is a limit; "(k=2)" or "(95 %)" behind that says what else it is.
 """
 
-_ABOUT = {
+ABOUT = {
     "flow": "The flow meter.",
     "tap": "A pressure tap and its gauge: one such table each, in the order of the flow.",
     "fitting": "A bend, valve or tee between the taps: one such table for each kind.",
@@ -35,6 +35,7 @@ _ABOUT = {
     "correlation": "How far friction correlations are trusted; the trade's ±10 % when it is left out.",
     "screen": "Limits that decide which rows count; shown with the values that hold when they are left out.",
 }
+"""What each table of a section file is for."""
 
 
 def write_blank_section(folder: str | Path) -> Path:
@@ -81,7 +82,7 @@ def blank_section() -> str:
     for table in ("flow", "tap", "tap", *LISTS[1:], *TABLES[1:]):
         needed = table in {"flow", "tap"}
         header = f"[[{table}]]" if table in LISTS else f"[{table}]"
-        parts += ["", f"# {_ABOUT[table]}", header if needed else f"# {header}", *_keys(table, needed)]
+        parts += ["", f"# {ABOUT[table]}", header if needed else f"# {header}", *_keys(table, needed)]
     first, second, rest = "\n".join(parts).split("[[tap]]", 2)
     return f"{first}[[tap]]{second}[[tap]]{rest.replace('upstream', 'downstream', 1)}\n"
 
