@@ -47,7 +47,7 @@ def summarise(log: Log, screening: Screening, section: Section, weight_pa_m: flo
     pressure = pressure.reshape(len(members), len(section.taps)).T
     static = np.abs(flow) < still_below(log, section)
     slopes = [
-        _slopes(flow, pressure, static, _rest(section, reach, weight_pa_m), reach)
+        difference_slopes(flow, pressure, static, rest_difference(section, reach, weight_pa_m), reach)
         for reach in range(len(section.taps) - 1)
     ]
     noise = [_noise(log, screening, members, reach, slope) for reach, slope in enumerate(slopes)]
@@ -83,13 +83,13 @@ def _noise(log: Log, screening: Screening, members: list[Rows], reach: int, slop
     return MeanNoise(*found)
 
 
-def _rest(section: Section, reach: int, weight_pa_m: float) -> float | None:
+def rest_difference(section: Section, reach: int, weight_pa_m: float) -> float | None:
     """Return the pressure difference of a reach at rest by the survey [Pa]; None when not surveyed."""
     upper, lower = section.taps[reach].elevation, section.taps[reach + 1].elevation
     return None if upper is None or lower is None else -(upper.value - lower.value) * weight_pa_m
 
 
-def _slopes(flow: Array, pressure: Array, static: NDArray[np.bool_], rest: float | None, reach: int) -> Array:
+def difference_slopes(flow: Array, pressure: Array, static: NDArray[np.bool_], rest: float | None, reach: int) -> Array:
     """Return how the pressure difference of a reach changes with flow at each plateau [Pa s/m³]."""
     difference = pressure[reach] - pressure[reach + 1]
     at_rest = float(np.mean(difference[static])) if np.any(static) else rest
