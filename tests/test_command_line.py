@@ -80,6 +80,19 @@ def test_wrong_words_end_with_2_and_say_what_to_do(words, said, capsys, tmp_path
     assert list(tmp_path.iterdir()) == []
 
 
+@pytest.fixture(scope="module")
+def found():
+    """One assessment for all tests of what happens after it."""
+    return fieldfit.assessment.assess(SAMPLE)
+
+
+@pytest.fixture
+def assessed(found, monkeypatch):
+    """Every assessment comes out the same, at once."""
+    monkeypatch.setattr(fieldfit.assessment, "assess", lambda *_: found)
+
+
+@pytest.mark.usefixtures("assessed")
 @pytest.mark.parametrize("option", ["--out", "--json"])
 @pytest.mark.parametrize("place", ["taken/deeper", "taken"])
 def test_a_place_that_cannot_be_written_ends_with_2(option, place, tmp_path, capsys):
@@ -98,7 +111,8 @@ def test_a_place_that_cannot_be_written_ends_with_2(option, place, tmp_path, cap
 
 
 @pytest.mark.skipif(os.name == "nt", reason="Windows has no devices in folders")
-def test_a_device_stays_where_it_is(capsys, tmp_path):
+@pytest.mark.usefixtures("assessed")
+def test_a_device_stays_where_it_is(tmp_path):
     assert main(["assess", str(SAMPLE), "--out", str(tmp_path), "--json", os.devnull]) == 0
     assert not Path(os.devnull).is_file()
     assert not list(tmp_path.rglob("*.part"))
