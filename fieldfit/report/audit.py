@@ -7,12 +7,15 @@ import datetime as dt
 import io
 import math
 from collections.abc import Iterable
+from pathlib import Path
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.section import Section
 from fieldfit.report.finding import CampaignFinding
+
+LAST_HEADINGS = ("plateau", "set aside because")
 
 
 def audit_csv(campaign: CampaignFinding, section: Section) -> str:
@@ -43,13 +46,19 @@ def audit_csv(campaign: CampaignFinding, section: Section) -> str:
     if log.temperature_degc is not None:
         headings.append("temperature [degC]")
         columns.append(_numbers(log.temperature_degc))
-    headings += ["plateau", "set aside because"]
+    headings += LAST_HEADINGS
     columns += [(str(n) if n else "" for n in screening.plateau.tolist()), screening.reason.tolist()]
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow(headings)
     writer.writerows(zip(*columns, strict=True))
     return out.getvalue()
+
+
+def is_audit(path: Path) -> bool:
+    """Return whether a file is an audit trail, which may lie beside the log it was made from."""
+    with path.open("rb") as file:
+        return file.readline(10_000).rstrip().endswith(",".join(LAST_HEADINGS).encode())
 
 
 def _numbers(values: NDArray[np.float64]) -> Iterable[str]:
