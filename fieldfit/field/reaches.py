@@ -92,6 +92,8 @@ class ReachHeads(NamedTuple):
     """The plateaus, with the reach's own flow."""
     head_loss_m: Array
     """(K,) head loss, levelled and without inertia [m]; by the gauges alone where nothing levels them."""
+    unlevelled_m: Array
+    """(K,) the same by survey and gauges alone [m]: of a static, what the gauges differ by at rest."""
     random_m: Array
     """(K,) standard error, independent between plateaus [m]."""
     standard_m: Array
@@ -129,9 +131,8 @@ def reach_heads(plateaus: Plateaus, section: Section, reach: int) -> ReachHeads:
     random = np.maximum(plateaus.random_pa[reach] / weight, 1e-7)
     levelling = _levelling(plateaus, section, reach, weight, random)
     drop = _elevation_drop(upstream, downstream)
-    head = _head_loss(plateaus, reach, weight, drop) + velocity_m
-    if levelling:
-        head = head - _offsets(plateaus, head)
+    unlevelled = _head_loss(plateaus, reach, weight, drop) + velocity_m
+    head = unlevelled - _offsets(plateaus, unlevelled) if levelling else unlevelled
     inertia = _length(upstream, downstream).value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
     head = head - inertia * plateaus.flow_slope_m3_s2
     doubt = inertia * _slope_standard(plateaus)
@@ -140,6 +141,7 @@ def reach_heads(plateaus: Plateaus, section: Section, reach: int) -> ReachHeads:
     return ReachHeads(
         plateaus=plateaus,
         head_loss_m=head,
+        unlevelled_m=unlevelled,
         random_m=random,
         standard_m=standard,
         reason=_reasons(plateaus, section, head, (standard, doubt)),
@@ -243,16 +245,18 @@ def _reasons(plateaus: Plateaus, section: Section, head: Array, doubts: tuple[Ar
     The doubts are the standard uncertainties of the head loss and of its correction for inertia [m].
     """
     standard, inertia = doubts
+    # Where nothing levels the gauges the head loss is not known well enough to judge it by.
+    known = np.isfinite(standard)
     viscosity = section.liquid.viscosity_m2_s(plateaus.temperature_degc)
     reynolds = 4.0 * plateaus.flow_m3_s / (np.pi * section.bore.value * viscosity)
-    clear = limit(section, "resolution") * standard
+    clear = limit(section, "resolution") * np.where(known, standard, 0.0)
     tests = (
         (plateaus.static, ""),
         (reynolds < limit(section, "laminar"), LAMINAR),
         (reynolds < limit(section, "turbulent"), CRITICAL),
-        (head < -clear, NEGATIVE),
-        (head < clear, UNRESOLVED),
-        (inertia > limit(section, "inertia") * head, UNSTEADY),
+        (known & (head < -clear), NEGATIVE),
+        (known & (head < clear), UNRESOLVED),
+        (known & (inertia > limit(section, "inertia") * head), UNSTEADY),
     )
     return np.select([test for test, _ in tests], [why for _, why in tests], default="").astype(np.str_)
 

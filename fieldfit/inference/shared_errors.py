@@ -132,7 +132,7 @@ def _add_gauges(found: _Collector, readings: ReachReadings) -> None:
         name = tap.gauge or tap.column
         pressure = readings.pressure_pa[end]
         base = np.full_like(pressure, levelling.pressure_pa[end]) if levelling else None
-        for part, effect in _gauge_parts(tap.accuracy, pressure, base).items():
+        for part, effect in gauge_parts(tap.accuracy, pressure, base).items():
             effects[name, part] = effects.get((name, part), np.zeros_like(weight)) + sign * effect / weight
             shapes[name, part] = tap.accuracy.shape
     for (name, part), effect in effects.items():
@@ -144,8 +144,8 @@ def _add_gauges(found: _Collector, readings: ReachReadings) -> None:
         found.add("elevations", drop.shape, head_m=np.full_like(weight, drop.standard))
 
 
-def _gauge_parts(accuracy: Accuracy, pressure: Array, base: Array | None) -> dict[str, Array]:
-    """Return what one standard deviation of a gauge's errors does to its reading [Pa], levelled or not."""
+def gauge_parts(accuracy: Accuracy, pressure: Array, base: Array | None) -> dict[str, Array]:
+    """Return what one standard deviation of each of a gauge's errors does to its reading [Pa], levelled or not."""
     fixed = accuracy.fixed_at(pressure)
     span = accuracy.span or float(max(np.max(np.abs(pressure)), 1.0))
     if base is None:
