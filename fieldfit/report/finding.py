@@ -4,12 +4,33 @@ from __future__ import annotations
 
 import datetime as dt
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
+from typing import Protocol
 
 from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, ReachReadings, Screening
 from fieldfit.field.section import Campaign, Section
 from fieldfit.inference.wall import Wall
+
+
+class ScreenedLog(Protocol):
+    """A log whose rows have been judged, with or without a fit to follow."""
+
+    @property
+    def log(self) -> Log:
+        """The log."""
+
+    @property
+    def screening(self) -> Screening:
+        """What became of its rows."""
+
+    @property
+    def plateaus(self) -> Plateaus:
+        """Its steady windows."""
+
+if TYPE_CHECKING:
+    from fieldfit.decisions.ageing import Ageing
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -62,6 +83,10 @@ class Finding:
     """What was known beforehand."""
     campaigns: tuple[CampaignFinding, ...]
     """One per log."""
+    ageing: tuple[Ageing, ...] = ()
+    """How each reach ages; empty with one campaign, unless it was asked for."""
+    no_ageing: str = ""
+    """Why several campaigns give no ageing."""
 
     @property
     def answered(self) -> bool:
