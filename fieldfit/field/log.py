@@ -43,3 +43,10 @@ class Log:
     """(N,) why the row cannot be used already now; empty where it can."""
     assumed: tuple[str, ...] = ()
     """Sentences on what was assumed about the file (separator, units, clock)."""
+    rows_in_file: int | None = None
+    """Rows of the file, where it was too long to keep more than some of them; None where all are here."""
+
+    @property
+    def rows(self) -> int:
+        """Number of rows of the file."""
+        return len(self.line) if self.rows_in_file is None else self.rows_in_file

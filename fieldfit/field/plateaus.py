@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections import Counter
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -86,7 +87,11 @@ def set_plateaus_aside(screening: Screening, reasons: dict[int, str]) -> Screeni
         rows = screening.plateau == number
         reason[rows] = why
         plateau[rows] = 0
-    return _screening(reason.astype(np.str_), plateau, screening.block)
+    changed = _screening(reason.astype(np.str_), plateau, screening.block)
+    if screening.runs is None:
+        return changed
+    runs = screening.runs.set_aside(reasons)
+    return replace(changed, runs=runs, counts=runs.counts)
 
 
 def _screening(reason: NDArray[np.str_], plateau: Rows, block: Rows | None) -> Screening:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.row_runs import RowRuns
 from fieldfit.field.section import Meter, Tap
 from fieldfit.field.uncertain import Uncertain
 
@@ -26,10 +27,19 @@ class Screening:
     block: NDArray[np.int64] | None = None
     """(N,) time block of each row of a service log, whose plateaus are groups of blocks of like flow; else None."""
 
+    runs: RowRuns | None = None
+    """What became of every row of a log too long to keep them all, of which the rows here are some; else None."""
+
     @property
     def used(self) -> int:
         """Number of rows used."""
-        return int(np.count_nonzero(self.plateau))
+        return int(np.count_nonzero(self.plateau)) if self.runs is None else self.runs.used
+
+    def rows_of(self, numbers: NDArray[np.int64]) -> int:
+        """Return how many rows are used in some plateaus."""
+        if self.runs is None:
+            return int(np.count_nonzero(np.isin(self.plateau, numbers[numbers > 0])))
+        return int(np.sum(self.runs.rows[np.isin(self.runs.plateau, numbers[numbers > 0])]))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
