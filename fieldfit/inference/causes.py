@@ -20,6 +20,7 @@ from fieldfit.inference.fault_model import (
     LEAK,
     LOCAL,
     OFFSET,
+    PLACE,
     SIZES,
     WALL,
     ZERO,
@@ -86,7 +87,7 @@ BELIEFS: dict[str, Belief] = {
     "gauge offset": Belief(
         0.05,
         "normal, 3 or 10 times what is stated of gauges and survey, or of the levelling where there is a static",
-        "knocked gauges and wrong elevations go far beyond limits; a static takes most of it away",
+        "knocked gauges and wrong elevations go far beyond limits; after a static it is a fifth as likely",
     ),
     "leak or open branch": Belief(
         0.05,
@@ -100,7 +101,7 @@ BELIEFS: dict[str, Belief] = {
     ),
     "meter error": Belief(
         0.05,
-        "gain normal with 3 times the stated limit or 5 %, or 20 %; zero normal with 1 % or 6 % of the largest flow",
+        "gain normal with 3 times what is stated or 5 %, with 15 % or with 40 %; zero normal with 1 or 6 % of the largest flow",
         "wrong meter factor, worn parts, bad mounting; a low-flow cut-off acts as a zero",
     ),
     "wrong unit or swapped channel": Belief(
@@ -111,6 +112,8 @@ BELIEFS: dict[str, Belief] = {
 }
 """Priors of all causes; two together have the product of theirs."""
 NOTHING = "nothing unusual"
+AFTER_STATIC = 0.2
+"""How much less likely a gauge offset is once a static has taken it off: it would have to come afterwards [-]."""
 BRANCH_SHARE = 0.25
 """Prior share of a branch that takes a share of the flow among all leaks and branches [-]."""
 
@@ -172,7 +175,6 @@ def together(first: Hypothesis, second: Hypothesis) -> Hypothesis:
         centre=centre,
         spread=spread,
         side=np.where(one.side[a] != 0.0, one.side[a], two.side[b]),
-        place=np.where(one.side[a] != 0.0, one.place[a], two.place[b]),
         flow_ratio=one.flow_ratio[a] * two.flow_ratio[b],
         head_ratio=one.head_ratio[a] * two.head_ratio[b],
         shift_m=one.shift_m[a] + two.shift_m[b],
@@ -191,7 +193,7 @@ class _Setting(NamedTuple):
         """Return trials of a new wall with nothing wrong, of equal weight."""
         low, high = np.log(self.new_m[0]), np.log(self.new_m[1] * MODEST_AGE)
         centre, spread = np.full((count, len(SIZES)), -np.inf), np.zeros((count, len(SIZES)))
-        centre[:, [OFFSET, GAIN, ZERO]] = 0.0
+        centre[:, [OFFSET, GAIN, ZERO, PLACE]] = 0.0
         centre[:, WALL], spread[:, WALL] = (low + high) / 2.0, (high - low) / (2.0 * NORMAL_95)
         one = np.ones(count)
         return {
@@ -199,7 +201,6 @@ class _Setting(NamedTuple):
             "centre": centre,
             "spread": spread,
             "side": 0.0 * one,
-            "place": 0.0 * one,
             "flow_ratio": one,
             "head_ratio": one.copy(),
             "shift_m": np.zeros((count, len(self.readings.flow_m3_s))),
@@ -256,6 +257,8 @@ def _one_size(column: int, low: float, high: float) -> Callable[[_Setting], Buil
 def _offset(setting: _Setting) -> Built:
     parts = setting.blank(2)
     parts["spread"][:, OFFSET] = np.array([3.0, 10.0]) * offset_standard(setting.readings)
+    if setting.readings.levelling:
+        parts["ln_weight"] += np.log(AFTER_STATIC)
     return parts, ()
 
 
@@ -278,7 +281,8 @@ def _leak(setting: _Setting) -> Built:
     parts = setting.blank(len(steady) + len(share))
     rows = np.array(steady + share)
     leak, branch = slice(0, len(steady)), slice(len(steady), None)
-    parts["side"], parts["place"] = rows[:, 1].copy(), rows[:, 2].copy()
+    parts["side"], parts["centre"][:, PLACE] = rows[:, 1].copy(), rows[:, 2]
+    parts["spread"][leak, PLACE] = RIPPLE * (PLACES[1] - PLACES[0])
     parts["centre"][leak, LEAK] = rows[leak, 0] + np.log(setting.top_flow)
     parts["spread"][leak, LEAK] = spread
     parts["centre"][branch, BRANCH] = rows[branch, 0]
@@ -291,9 +295,9 @@ def _leak(setting: _Setting) -> Built:
 def _meter(setting: _Setting) -> Built:
     accuracy = setting.readings.meter.accuracy.standard_at(setting.readings.flow_m3_s)
     stated = float(np.min(accuracy / np.abs(setting.readings.flow_m3_s)))
-    parts = setting.blank(4)
-    parts["spread"][:2, GAIN] = (max(3.0 * stated, 0.05), 0.2)
-    parts["spread"][2:, ZERO] = np.array([0.01, 0.06]) * setting.top_flow
+    parts = setting.blank(5)
+    parts["spread"][:3, GAIN] = (max(3.0 * stated, 0.05), 0.15, 0.4)
+    parts["spread"][3:, ZERO] = np.array([0.01, 0.06]) * setting.top_flow
     return parts, ()
 
 

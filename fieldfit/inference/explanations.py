@@ -41,8 +41,6 @@ class Explanation:
     """How large it would be [SI]."""
     option: str
     """Which of several discrete faults, in words; empty without."""
-    place: float | None
-    """Share of the length upstream of a leak, at its best [-]; None without one."""
     meter_upstream: bool | None
     """Whether the meter would sit upstream of the leak; None without one."""
     explains: bool
@@ -192,7 +190,6 @@ def _explanation(one: Weighed, probability: float, conditions: Conditions) -> Ex
         probability=probability,
         sizes=one.sizes,
         option=one.option,
-        place=float(trial.place[0]) if leak else None,
         meter_upstream=bool(trial.side[0] > 0.0) if leak else None,
         explains=one.explains,
         reduced_chi_square=one.chi_square / one.freedom,

@@ -18,10 +18,11 @@ from fieldfit.inference.friction_curve import ROUGHEST, TURBULENT_LAW_FROM
 
 Array = NDArray[np.float64]
 
-WALL, BORE, LOCAL, OFFSET, AIR, LEAK, BRANCH, GAIN, ZERO = range(9)
-SIZES = ("wall", "bore", "local", "offset", "air", "leak", "branch", "gain", "zero")
+WALL, BORE, LOCAL, OFFSET, AIR, LEAK, BRANCH, GAIN, ZERO, PLACE = range(10)
+SIZES = ("wall", "bore", "local", "offset", "air", "leak", "branch", "gain", "zero", "place")
 """Sizes of a trial, in order: ln ε [m]; ln of −ln(bore over as-new); ln K; offset of the reading [m]; ln head step of air
-[m]; ln leak [m³/s]; ln share of the flow in a branch; ln of (meter over true flow); zero of the meter [m³/s]."""
+[m]; ln leak [m³/s]; ln share of the flow in a branch; ln of (meter over true flow); zero of the meter [m³/s]; share of the
+length upstream of a leak."""
 BY_RATIO = (WALL, BORE, LOCAL, AIR, LEAK, BRANCH)
 """Sizes given by their logarithm: −inf is none."""
 
@@ -33,13 +34,11 @@ class Trials:
     ln_weight: Array
     """(T,) logarithm of the prior probability [-]."""
     centre: Array
-    """(T, 9) centre of each size."""
+    """(T, 10) centre of each size."""
     spread: Array
-    """(T, 9) prior standard deviation of each; zero where it is fixed."""
+    """(T, 10) prior standard deviation of each; zero where it is fixed."""
     side: Array
     """(T,) 1 where the meter sits upstream of the leak, −1 downstream, 0 without one."""
-    place: Array
-    """(T,) share of the length upstream of the leak [-]."""
     flow_ratio: Array
     """(T,) metered over true flow, from a wrong unit [-]."""
     head_ratio: Array
@@ -63,7 +62,7 @@ class Reading(NamedTuple):
     head_m: Array
     """(T, K) head loss as read [m]."""
     slopes: Array
-    """(T, M, K) its slopes: nine sizes, the shared errors, the correlation's terms, each by one standard deviation [m]."""
+    """(T, M, K) its slopes: ten sizes, the shared errors, the correlation's terms, each by one standard deviation [m]."""
 
 
 class _Part(NamedTuple):
@@ -108,19 +107,19 @@ def read(conditions: Conditions, trials: Trials, u: Array) -> Reading:
     metered, by_read = _metered(conditions, trials, (sizes, ratios), shared)
     lost = ratios[:, LEAK, None] + ratios[:, BRANCH, None] * metered
     down, up = (trials.side < 0.0)[:, None], (trials.side > 0.0)[:, None]
-    above = np.where(trials.side == 0.0, 1.0, trials.place)[:, None]
+    above = np.where(trials.side == 0.0, 1.0, np.clip(sizes[:, PLACE], 0.0, 1.0))[:, None]
     first = _part(conditions, ratios, (shared, shape), metered + down * lost)
     second = _part(conditions, ratios, (shared, shape), metered - up * lost)
-    flow_first, flow_second = above * first.by_flow, (1.0 - above) * second.by_flow
-    branch = ratios[:, BRANCH, None]
-    by_metered = flow_first * (1.0 + down * branch) + flow_second * (1.0 - up * branch)
-    by_lost = flow_first * down - flow_second * up
     both = _Part(*(above * one + (1.0 - above) * two for one, two in zip(first, second, strict=True)))
-    k_sum = conditions.fitting_k + shared @ conditions.fitting_errors_k + ratios[:, LOCAL]
-    true_head = both.friction + k_sum[:, None] * both.per_k + ratios[:, AIR, None]
+    by_lost = above * first.by_flow * down - (1.0 - above) * second.by_flow * up
+    by_metered = both.by_flow + by_lost * ratios[:, BRANCH, None]
+    k_sum = (conditions.fitting_k + shared @ conditions.fitting_errors_k + ratios[:, LOCAL])[:, None]
+    true_head = both.friction + k_sum * both.per_k + ratios[:, AIR, None]
     through = _by_size(conditions, ratios, both, (by_metered, by_lost, metered))
     by_zero = by_metered * by_read
     through[:, ZERO] = -by_zero
+    moved = first.friction - second.friction + k_sum * (first.per_k - second.per_k)
+    through[:, PLACE] = np.where((sizes[:, PLACE] > 0.0) & (sizes[:, PLACE] < 1.0), moved.T, 0.0).T
     sharing = (
         conditions.flow_errors_m3_s * (by_zero / trials.flow_ratio[:, None])[:, None, :]
         + conditions.ln_bore[:, None] * both.ln_bore[:, None, :]
