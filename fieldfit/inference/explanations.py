@@ -123,6 +123,22 @@ def explain(readings: ReachReadings, limit: Correlation, new_m: tuple[float, flo
     return _sum_up(found, (readings, conditions, noise), unexplained, scale)
 
 
+def new_roughness(name: str | None) -> tuple[float, float] | None:
+    """Return the roughness of new pipe of a material, low and high [m]; None when it is unknown.
+
+    Examples
+    --------
+    >>> new_roughness("carbon steel"), new_roughness(None)
+    ((2e-05, 0.0001), None)
+    """
+    if name is None:
+        return None
+    from fieldfit.hydraulics.materials import material
+
+    low, _, high = material(name).roughness_m
+    return low, high
+
+
 def _pairs(singles: tuple[Hypothesis, ...]) -> tuple[Hypothesis, ...]:
     """Return two causes at once; wrong units, of many trials themselves, only beside a rough wall."""
     faults = [one for one in singles if one.causes != (NOTHING,)]
