@@ -22,6 +22,7 @@ from fieldfit.field.section_file import read_section
 from fieldfit.field.section_outlook import section_on
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 from fieldfit.inference.estimate import estimate
+from fieldfit.inference.explanations import explain, new_roughness
 from fieldfit.report.cautions import cautions
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 
@@ -66,7 +67,10 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
     plateaus = without_dead_taps(summarise(bridged, screening, section, _weight(section)), screening, dead)
     readings = [reach_readings(plateaus, section, reach) for reach in range(len(section.taps) - 1)]
     screening = set_plateaus_aside(screening, _of_no_reach(readings))
-    reaches = tuple(_assess_reach(section_of_reach(section, k), of_reach) for k, of_reach in enumerate(readings))
+    every = [reach_readings(plateaus, section, reach, every_turbulent=True) for reach in range(len(readings))]
+    reaches = tuple(
+        _assess_reach(section_of_reach(section, k), of_reach, every[k]) for k, of_reach in enumerate(readings)
+    )
     return CampaignFinding(
         date=date or (log.start.date() if log.start else None),
         log=log,
@@ -109,9 +113,14 @@ def _of_no_reach(readings: list[ReachReadings]) -> dict[int, str]:
     return {number: why for number, why in of_none.items() if all(other[number] != DEAD_TAP for other in reasons)}
 
 
-def _assess_reach(section: Section, readings: ReachReadings) -> ReachFinding:
-    """Estimate one reach's wall and compare it with new pipe."""
+def _assess_reach(section: Section, readings: ReachReadings, every: ReachReadings) -> ReachFinding:
+    """Estimate one reach's wall, compare it with new pipe, and see what else could explain its readings."""
     wall = estimate(readings, section.correlation)
     material = section.material
     new_pipe = compare_with_new(wall, material, section.bore.value, section.correlation) if material else None
-    return ReachFinding(readings=readings, wall=wall, new_pipe=new_pipe)
+    return ReachFinding(
+        readings=readings,
+        wall=wall,
+        new_pipe=new_pipe,
+        explanations=explain(every, section.correlation, new_roughness(material)),
+    )

@@ -20,7 +20,9 @@ from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 Array = NDArray[np.float64]
 
 
-def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachReadings:
+def reach_readings(
+    plateaus: Plateaus, section: Section, reach: int, *, every_turbulent: bool = False
+) -> ReachReadings:
     """Work out the head losses of one reach and set aside the plateaus that carry no roughness.
 
     With a static in the log the gauges are levelled on it, drift between statics shared out over time; without
@@ -34,6 +36,8 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
         The test section.
     reach : int
         The reach from tap `reach` to the next.
+    every_turbulent : bool
+        Keep plateaus of negative or unresolved head loss as well: they carry no roughness, but they show a fault.
 
     Returns
     -------
@@ -55,7 +59,8 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int) -> ReachRea
         )
     section = section_of_reach(section, reach)
     plateaus, head, random, reasons = heads.plateaus, heads.head_loss_m, heads.random_m, heads.reason
-    keep = ~plateaus.static & (reasons == "")
+    kept = ("", NEGATIVE, UNRESOLVED) if every_turbulent else ("",)
+    keep = ~plateaus.static & np.isin(reasons, kept)
     temperature = plateaus.temperature_degc[keep]
     return ReachReadings(
         upstream=upstream,

@@ -11,6 +11,7 @@ from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, ReachReadings, Screening
 from fieldfit.field.section import Campaign, Section
+from fieldfit.inference.explanations import Explanations
 from fieldfit.inference.wall import Wall
 
 
@@ -53,6 +54,8 @@ class ReachFinding:
     """What the fit says."""
     new_pipe: NewPipeComparison | None
     """Against new pipe; None when the material is unknown or there is no estimate."""
+    explanations: Explanations | None = None
+    """What else could explain the readings; None without a turbulent reading."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
