@@ -11,11 +11,12 @@ import numpy as np
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.errors import InputError
 from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
+from fieldfit.field.log import Log
 from fieldfit.field.log_file import read_log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
 from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_readings
-from fieldfit.field.readings import ReachReadings
+from fieldfit.field.readings import Plateaus, ReachReadings, Screening
 from fieldfit.field.screens import DEAD_TAP
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
@@ -48,8 +49,17 @@ def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
         When a file cannot be used; the message says where and what to do.
     """
     known = section if isinstance(section, Section) else read_section(Path(section))
-    campaigns = [_campaign(known, path, date) for path, date in logs_to_read(known, logs)]
-    return Finding(section=known, campaigns=tuple(campaigns))
+    finding = Finding(section=known, campaigns=tuple(assess_each(known, logs)))
+    if len(finding.campaigns) < 2:
+        return finding
+    from fieldfit.trend import with_ageing_if_it_can
+
+    return with_ageing_if_it_can(finding)
+
+
+def assess_each(section: Section, logs: tuple[str | Path, ...]) -> list[CampaignFinding]:
+    """Take every log from its rows to what is found of each reach."""
+    return [_campaign(section, path, date) for path, date in logs_to_read(section, logs)]
 
 
 def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
@@ -61,12 +71,9 @@ def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFin
 
 def assess_campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
     """Take one log from its rows to what is found of each reach."""
-    log = read_log(path, section)
-    bridged, dead = bridge_dead_taps(log, section)
-    screening = screen(bridged, section)
-    plateaus = without_dead_taps(summarise(bridged, screening, section, _weight(section)), screening, dead)
+    log, screening, plateaus = read_campaign(section, path)
     readings = [reach_readings(plateaus, section, reach) for reach in range(len(section.taps) - 1)]
-    screening = set_plateaus_aside(screening, _of_no_reach(readings))
+    screening = set_plateaus_aside(screening, of_no_reach([dict(of_reach.set_aside) for of_reach in readings]))
     every = [reach_readings(plateaus, section, reach, every_turbulent=True) for reach in range(len(readings))]
     reaches = tuple(
         _assess_reach(section_of_reach(section, k), of_reach, every[k]) for k, of_reach in enumerate(readings)
@@ -81,13 +88,21 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
     )
 
 
+def read_campaign(section: Section, path: Path) -> tuple[Log, Screening, Plateaus]:
+    """Read one log and part its rows into plateaus and rows set aside: what screening and assessing begin with."""
+    log = read_log(path, section)
+    bridged, dead = bridge_dead_taps(log, section)
+    screening = screen(bridged, section)
+    return log, screening, without_dead_taps(summarise(bridged, screening, section, _weight(section)), screening, dead)
+
+
 def logs_to_read(section: Section, given: tuple[str | Path, ...]) -> list[tuple[Path, dt.date | None]]:
     """Return the logs to read with their dates: those given, else the section's campaigns, else the only CSV file."""
     folder = section.path.parent
     if given:
         return [(Path(path), None) for path in given]
     if section.campaigns:
-        return [(folder / campaign.log, campaign.date) for campaign in section.campaigns]
+        return [(campaign.log, campaign.date) for campaign in section.campaigns]
     found = sorted(path for path in folder.glob("*.csv") if path.is_file())
     if len(found) == 1:
         return [(found[0], None)]
@@ -105,9 +120,8 @@ def _weight(section: Section) -> float:
     return float(section.liquid.density_kg_m3(np.array([temperature]))[0]) * STANDARD_GRAVITY
 
 
-def _of_no_reach(readings: list[ReachReadings]) -> dict[int, str]:
-    """Return the plateaus that no reach can use, with the first reach's reason."""
-    reasons = [dict(of_reach.set_aside) for of_reach in readings]
+def of_no_reach(reasons: list[dict[int, str]]) -> dict[int, str]:
+    """Return the plateaus that no reach can use, with the first reach's reason, from those that each sets aside."""
     of_none = {number: why for number, why in reasons[0].items() if all(number in other for other in reasons)}
     # Where a tap was dead, the reach across it may still be known.
     return {number: why for number, why in of_none.items() if all(other[number] != DEAD_TAP for other in reasons)}
