@@ -20,6 +20,9 @@ _INTRODUCTION = f"""\
 ABOUT = {
     "flow": "The flow meter.",
     "tap": "A pressure tap and its gauge: one such table each, in the order of the flow.",
+    "differential": "One transmitter of the pressure difference between the two taps, instead of their gauges.",
+    "outlet": "A hydrant outlet with its pitot: one such table each, where the flow comes from pitots.",
+    "logger": "A logger whose clock something is known of: one such table each; other clocks are found.",
     "fitting": "A bend, valve or tee between the taps: one such table for each kind.",
     "reach": "A reach whose pipe differs from the rest: one such table each; not needed when all is one pipe.",
     "branch": "A side flow between meter and last tap: one such table each.",

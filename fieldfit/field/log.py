@@ -9,6 +9,8 @@ from typing import Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.logger_clock import LoggerClock
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Log:
@@ -43,6 +45,8 @@ class Log:
     """(N,) why the row cannot be used already now; empty where it can."""
     assumed: tuple[str, ...] = ()
     """Sentences on what was assumed about the file (separator, units, clock)."""
+    clocks: tuple[LoggerClock, ...] = ()
+    """How the clocks of several loggers stood; none for a log of one logger."""
     rows_in_file: int | None = None
     """Rows of the file, where it was too long to keep more than some of them; None where all are here."""
 

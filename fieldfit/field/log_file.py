@@ -11,11 +11,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.channel_values import flow_of, flow_step, pressure_steps, pressures_of
 from fieldfit.field.channels import Channels
 from fieldfit.field.clock import Clock, count_from_start, read_clock, repeated_or_backwards
 from fieldfit.field.log import Log
 from fieldfit.field.log_form import Columns, log_form, say_form
-from fieldfit.field.log_headings import Column, Headings, Wanted, find_any_headings, find_headings, wanted_columns
+from fieldfit.field.log_headings import Column, Headings, Wanted, find_any_headings, find_headings
 from fieldfit.field.log_rows import Rows, read_rows
 from fieldfit.field.log_source import LogSource, log_source
 from fieldfit.field.resolution import written_step
@@ -143,8 +144,6 @@ def _channels(source: LogSource, rows: Rows, columns: Columns, clock: Clock, sai
 
 def _log(channels: Channels, section: Section) -> Log:
     """Return the channels of a file that holds all of a section's columns as a log."""
-    flow, *pressures = (channels.values[wanted.column] for wanted in wanted_columns(section))
-    flow_step, *steps = (channels.steps[wanted.column] for wanted in wanted_columns(section))
     return Log(
         file=channels.file,
         sha256=channels.sha256,
@@ -152,11 +151,11 @@ def _log(channels: Channels, section: Section) -> Log:
         line=channels.line,
         start=channels.start,
         time_s=channels.time_s,
-        flow_m3_s=flow,
-        pressure_pa=_frozen(np.array(pressures)),
+        flow_m3_s=flow_of(section, channels.values),
+        pressure_pa=_frozen(pressures_of(section, channels.values, channels.temperature_degc)),
         temperature_degc=channels.temperature_degc,
-        flow_step_m3_s=flow_step,
-        pressure_step_pa=_frozen(np.array(steps)),
+        flow_step_m3_s=flow_step(section, channels.values, channels.steps),
+        pressure_step_pa=_frozen(pressure_steps(section, channels.steps)),
         reason=channels.reason,
         assumed=channels.assumed,
     )

@@ -116,6 +116,7 @@ LIMITS = {
 MISSING = "missing value"
 CLOCK = "clock repeated or backwards"
 STUCK = "stuck gauge"
+UNPAIRED = "no reading of another logger"
 RANGE = "out of range"
 UNSTEADY = "unsteady"
 OUTLIER = "outlier"
@@ -144,6 +145,7 @@ class Screen:
 SCREENS: tuple[Screen, ...] = (
     Screen(reason=MISSING, judges="row", limits=(), asks="A value that is needed is not there."),
     Screen(reason=CLOCK, judges="row", limits=(), asks="The clock repeats itself or runs backwards."),
+    Screen(reason=UNPAIRED, judges="row", limits=(), asks="Another logger had not begun, or had ended."),
     Screen(reason=RANGE, judges="row", limits=(), asks="A gauge reads beyond its range, or less than a vacuum."),
     Screen(
         reason=STUCK,

@@ -8,7 +8,10 @@ from pathlib import Path
 from typing import Literal
 
 from fieldfit.field.contract import Contract
+from fieldfit.field.differential import Differential
+from fieldfit.field.flow_devices import Outlet, Throat
 from fieldfit.field.log_hints import LogHints
+from fieldfit.field.logger_clock import Logger
 from fieldfit.field.outlook import Changes, Outlook
 from fieldfit.field.raw_signal import RawSignal
 from fieldfit.field.uncertain import Accuracy, Uncertain
@@ -35,6 +38,10 @@ class Meter:
     """Whether its column counts on from row to row; None where the log shows it."""
     pulse_m3: float | None = None
     """Volume of one pulse [m³]; None where the column counts no pulses."""
+    outlets: tuple[Outlet, ...] = ()
+    """Hydrant outlets whose pitot pressures the flow is summed from; none for any other device."""
+    throat: Throat | None = None
+    """Constriction whose pressure difference the column holds; None for any other device."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -80,7 +87,9 @@ class Campaign:
     date: dt.date | None
     """Day of the test."""
     log: Path
-    """Its log."""
+    """Its log; the first file where several loggers have one each."""
+    parts: tuple[Path, ...] = ()
+    """Files of its other loggers."""
     cleaned: bool = False
     """Whether the pipe was cleaned since the campaign before."""
     meter: str | None = None
@@ -197,6 +206,12 @@ class Section:
     """What something other than friction says of the bore."""
     deposit: Deposit = field(default_factory=Deposit)
     """What is known of a deposit."""
+    differential: Differential | None = None
+    """One transmitter between the two taps instead of two gauges; the taps then stand for it."""
+    loggers: tuple[Logger, ...] = ()
+    """What is said of loggers' clocks."""
+    wave_speed_m_s: float | None = None
+    """Speed of a pressure wave along the pipe [m/s]; None where nothing is said."""
     log_hints: LogHints = field(default_factory=LogHints)
     """How its logs are written."""
     screen_limits: tuple[tuple[str, float], ...] = ()

@@ -11,6 +11,15 @@ from fieldfit.field.quantities import quantity
 from fieldfit.field.section import Campaign, Correlation, Fitting, Section, Tap
 from fieldfit.field.section_bore_evidence import read_bore_evidence, read_deposit
 from fieldfit.field.section_contract import read_contract
+from fieldfit.field.section_devices import (
+    fill_in,
+    read_device,
+    read_differential,
+    read_loggers,
+    read_wave_speed,
+    said_of_devices,
+    texts,
+)
 from fieldfit.field.section_log import read_log_hints
 from fieldfit.field.section_outlook import read_changes, read_cleaned, read_outlook
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
@@ -45,7 +54,7 @@ def read_section(path: str | Path) -> Section:
         With file, line and key, what was seen, and what would be right.
     """
     file = _file(Path(path))
-    top = read_toml(file)
+    top = fill_in(read_toml(file))
     said: list[str] = []
     pipe = read_pipe(top, said)
     liquid = read_liquid(top, said)
@@ -53,10 +62,13 @@ def read_section(path: str | Path) -> Section:
     flow = top.table("flow")
     if flow is None:
         raise _no_flow(top)
-    meter = read_meter(flow, said)
+    degrees = temperature.value if temperature else 15.0
+    meter = read_device(top, flow, (pipe.bore, liquid, degrees), lambda: read_meter(flow, said))
     with top.at("tap"):
         taps = read_taps(top.tables("tap"), said)
         check_columns(meter, taps)
+    differential, taps = read_differential(top.table("differential"), taps, liquid)
+    said += said_of_devices(top, meter)
     fittings = read_fittings(top.tables("fitting"), pipe.bore.value, said)
     _check_sizes(top, pipe, taps, fittings)
     reach_pipes = read_reach_pipes(top.tables("reach"), taps, said)
@@ -85,6 +97,9 @@ def read_section(path: str | Path) -> Section:
         meter_station_m=meter_station,
         bore_evidence=read_bore_evidence(top.tables("bore_evidence"), taps),
         deposit=read_deposit(top.table("deposit")),
+        differential=differential,
+        loggers=read_loggers(top.tables("logger"), (meter.column, *(tap.column for tap in taps))),
+        wave_speed_m_s=read_wave_speed(top),
         log_hints=read_log_hints(top.table("log")),
         screen_limits=read_screen_limits(top.table("screen")),
         screen_mode=read_screen_mode(top.table("screen")),
@@ -135,9 +150,9 @@ def _campaign(table: TomlTable, folder: Path, installed: dt.date | None) -> Camp
     if date is not None and installed is not None and date < installed:
         seen = f"the test of {date} is older than the pipe, installed {installed}"
         raise InputError(seen, "Check both dates: year, month, day.").at(table.where("date"))
-    log = folder / table.needed("log")
+    logs = [folder / name for name in texts(table, "log")]
     return Campaign(
-        date=date, log=log, cleaned=read_cleaned(table)[0], meter=table.text("meter"), changes=read_changes(table)
+        date=date, log=logs[0], parts=tuple(logs[1:]), cleaned=read_cleaned(table)[0], meter=table.text("meter"), changes=read_changes(table)
     )
 
 

@@ -50,6 +50,7 @@ KEYS: tuple[Key, ...] = (
     _key("fluid.name", '"gear oil"', "printed name of the liquid"),
     _key("fluid.density", '"870 kg/m3"', "its density", required=True),
     _key("fluid.viscosity", '"32 cSt"', "its viscosity, kinematic or dynamic by the unit", required=True),
+    _key("wave_speed", '"1200 m/s"', "speed of a pressure wave in the pipe, for clocks of loggers at its two ends"),
     _key("flow.column", '"flow"', "heading in the log, without its unit", required=True),
     _key("flow.unit", '"L/s"', "unit of that column; it wins over the heading's"),
     _key("flow.accuracy", '"0.5 % of reading"', "how far the meter may be off", required=True),
@@ -59,6 +60,10 @@ KEYS: tuple[Key, ...] = (
     _key("flow.pulse", '"10 L"', "volume of one pulse, where the column counts pulses"),
     _key("flow.signal", '"4-20 mA"', "raw signal of that column: 4-20 mA, 0-20 mA, 0-10 V, 2-10 V, 1-5 V or 0-5 V"),
     _key("flow.range", '"0 to 50 L/s"', "what that signal stands for at its ends"),
+    _key("flow.device", '"pitot"', "meter, weir, bucket, pitot, orifice, a nozzle or a venturi; meter when left out"),
+    _key("flow.throat", '"60 mm ± 0.1 %"', "opening of an orifice, nozzle or venturi whose pressure difference is logged"),
+    _key("flow.throat_pipe", '"100 mm ± 0.4 %"', "inside diameter of the pipe that sits in; the bore when left out"),
+    _key("flow.tappings", '"corner"', "pressure tappings of an orifice: corner, flange, or D and D/2"),
     _key("flow.station", '"0 m"', "where the meter stands along the pipe; needed only with branches above it"),
     _key("tap.column", '"upstream"', "heading in the log, without its unit", required=True),
     _key("tap.unit", '"kPa"', "unit of that column; it wins over the heading's"),
@@ -68,6 +73,28 @@ KEYS: tuple[Key, ...] = (
     _key("tap.signal", '"4-20 mA"', "raw signal of that column, as for the flow"),
     _key("tap.range", '"0 to 10 bar"', "what that signal stands for at its ends; bara for absolute pressure"),
     _key("tap.gauge", '"PG-07"', "serial of the gauge"),
+    _key("outlet.column", '"pitot"', "heading of its pitot pressure in the log, without the unit", required=True),
+    _key("outlet.unit", '"psi"', "unit of that column; it wins over the heading's"),
+    _key("outlet.diameter", '"2.5 in ± 0.5 %"', "inside diameter of the outlet", required=True),
+    _key("outlet.edge", '"rounded"', "its inner edge, by touch: rounded 0.90, square 0.80, projecting 0.70"),
+    _key("outlet.coefficient", '"0.90 ± 5 %"', "its discharge coefficient; this or edge"),
+    _key("outlet.pumper", "false", "whether it is a large pumper outlet, whose flow is reduced further"),
+    _key("outlet.accuracy", '"2 % of 60 psi"', "how far the pitot gauge may be off", required=True),
+    _key("differential.column", '"dp"', "heading of upper less lower pressure, without its unit", required=True),
+    _key("differential.unit", '"kPa"', "unit of that column; it wins over the heading's"),
+    _key("differential.accuracy", '"0.1 % of 1 bar"', "how far the transmitter may be off", required=True),
+    _key("differential.serial", '"DP-03"', "serial of the transmitter"),
+    _key("differential.signal", '"4-20 mA"', "raw signal of that column, as for the flow"),
+    _key("differential.range", '"0 to 1 bar"', "what that signal stands for at its ends"),
+    _key(
+        "differential.hose_temperature",
+        '"25 degC ± 2 K"',
+        "of the water in impulse lines or a parallel hose, where it differs from the main's",
+    ),
+    _key("logger.file", '"up.csv"', "file of a logger whose clock something is known of"),
+    _key("logger.columns", '["upstream"]', "columns that the logger wrote; all of its file when left out"),
+    _key("logger.offset", '"+3600 s"', "how far its clock is ahead; found from the readings when left out"),
+    _key("logger.drift", '"20 ppm"', "how fast its clock gains, or in s/day"),
     _key("fitting.name", '"two long-radius bends"', "printed name"),
     _key("fitting.k", '"0.5 ± 20 %"', "loss coefficient of one, on the velocity in the pipe; this or kind"),
     _key("fitting.kind", '"gate valve, open"', "kind of fitting that K is looked up for; this or k"),
@@ -97,7 +124,9 @@ KEYS: tuple[Key, ...] = (
     _key("deposit.density", '"1900 kg/m3 ± 20 %"', "density of the deposit as it sits in the pipe, for its mass"),
     _key("deposit.variation", '"30 %"', "how unevenly the deposit lies: standard deviation over mean thickness"),
     _key("campaign.date", "2026-05-12", "day of the test"),
-    _key("campaign.log", '"2026-05-12.csv"', "its log, beside this file", required=True),
+    _key(
+        "campaign.log", '"2026-05-12.csv"', "its log, beside this file; a list of files, one per logger", required=True
+    ),
     _key("campaign.cleaned", "true", "whether the pipe was cleaned since the campaign before, or the day it was"),
     _key("campaign.relined", '"epoxy-lined steel"', "material of a lining put in since the campaign before, or true"),
     _key("campaign.bore", '"51.0 mm ± 0.3 mm"', "bore after lining, where it changed"),
@@ -153,9 +182,9 @@ KEYS: tuple[Key, ...] = (
 )
 """Every key, table by table."""
 
-TABLES = ("flow", "log", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
+TABLES = ("flow", "differential", "log", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
 """Tables that may stand once."""
-LISTS = ("tap", "fitting", "reach", "branch", "bore_evidence", "campaign")
+LISTS = ("tap", "outlet", "fitting", "logger", "reach", "branch", "bore_evidence", "campaign")
 """Tables that may stand several times."""
 
 

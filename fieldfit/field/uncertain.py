@@ -51,10 +51,16 @@ class Accuracy:
     """Reading below which `low_gain` holds instead of `gain` [SI]."""
     low_gain: float = 0.0
     """Relative standard uncertainty of small readings [-]."""
+    root: float = 0.0
+    """For a flow that is a root of a pressure: its standard uncertainty by the pressure's fixed error, times the flow
+    [SI²]."""
 
     def gain_at(self, reading: NDArray[np.float64]) -> NDArray[np.float64]:
         """Return the relative standard uncertainty at each reading [-], same shape."""
-        return np.where(np.abs(reading) < self.low_below, self.low_gain, self.gain)
+        gain = np.where(np.abs(reading) < self.low_below, self.low_gain, self.gain)
+        if self.root == 0.0:
+            return gain
+        return np.hypot(gain, self.root / np.maximum(np.square(reading), self.root))
 
     def fixed_at(self, reading: NDArray[np.float64]) -> NDArray[np.float64]:
         """Return the fixed standard uncertainty at each reading [SI], same shape."""
