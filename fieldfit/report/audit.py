@@ -13,18 +13,18 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.section import Section
-from fieldfit.report.finding import CampaignFinding
+from fieldfit.report.finding import ScreenedLog
 
 LAST_HEADINGS = ("plateau", "set aside because")
 
 
-def audit_csv(campaign: CampaignFinding, section: Section) -> str:
+def audit_csv(campaign: ScreenedLog, section: Section) -> str:
     """Return all rows of a log as CSV: readings in SI units, plateau, and why a row was set aside.
 
     Parameters
     ----------
-    campaign : CampaignFinding
-        What one log says.
+    campaign : ScreenedLog
+        A log and what became of its rows.
     section : Section
         Names the columns.
 

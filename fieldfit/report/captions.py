@@ -6,7 +6,7 @@ import numpy as np
 
 from fieldfit.report.cautions import SCATTER
 from fieldfit.report.digits import litres, percent, significant, value_with_band
-from fieldfit.report.finding import CampaignFinding, ReachFinding
+from fieldfit.report.finding import ReachFinding, ScreenedLog
 
 
 def head_loss(reach: ReachFinding) -> str:
@@ -81,7 +81,7 @@ def budget(reach: ReachFinding) -> str:
     return f"{told}{beyond}; for C it is {by_c.error} ({percent(by_c.measurement_share)})."
 
 
-def rows(campaign: CampaignFinding) -> str:
+def rows(campaign: ScreenedLog) -> str:
     """Say how much of the log is used."""
     used, total = campaign.screening.used, campaign.log.line.size
     if used == total:

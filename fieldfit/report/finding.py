@@ -4,8 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
-from typing import Protocol
+from typing import TYPE_CHECKING, Protocol
 
 from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.log import Log

@@ -53,15 +53,18 @@ def page(finding: Finding) -> str:
     for campaign in campaigns:
         for shown in _shown(campaign):
             shown["svg"] = Markup(drawn[shown["name"]])
-    return _environment().get_template("page.html").render(_context(finding, campaigns)) + "\n"
+    return environment().get_template("page.html").render(_context(finding, campaigns)) + "\n"
 
 
 def page_in_notebook(finding: Finding) -> str:
     """Return the page in a frame of its own, so that its style does not reach the notebook around it."""
-    return (
-        f'<iframe title="Report" style="width: 100%; height: 60em; border: 0" srcdoc="{html.escape(page(finding))}">'
-        "</iframe>"
-    )
+    return in_a_frame(page(finding))
+
+
+def in_a_frame(whole_page: str) -> str:
+    """Return a page in a frame that can stand in a notebook."""
+    escaped = html.escape(whole_page)
+    return f'<iframe title="Report" style="width: 100%; height: 60em; border: 0" srcdoc="{escaped}"></iframe>'
 
 
 def tied(text: Any) -> Any:
@@ -78,7 +81,7 @@ def tied(text: Any) -> Any:
 
 
 @functools.cache
-def _environment() -> Environment:
+def environment() -> Environment:
     """Return the templates, everything escaped."""
     from jinja2 import Environment, FileSystemLoader, StrictUndefined
 
@@ -115,7 +118,7 @@ def _context(finding: Finding, campaigns: list[dict[str, Any]]) -> dict[str, Any
         "draws": f"{digits.fixed(first.draws, 0)} draws, seed {first.seed}" if first else "",
         "laminar": f"{LAMINAR_LIMIT:.0f}",
         "turbulent": f"{TURBULENT_LIMIT:.0f}",
-        "versions": _versions(),
+        "versions": versions(),
     }
 
 
@@ -136,7 +139,7 @@ def _subtitle(finding: Finding) -> str:
     return " · ".join(parts)
 
 
-def _versions() -> str:
+def versions() -> str:
     """Return the program and what it stands on."""
     libraries = ", ".join(f"{name} {version(name)}" for name in LIBRARIES)
     return f"fieldfit {__version__}, Python {sys.version_info.major}.{sys.version_info.minor}, {libraries}"

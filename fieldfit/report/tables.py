@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from fieldfit.field.reaches import ReachHeads
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section, Tap
 from fieldfit.inference.wall import Band, BudgetEntry
@@ -23,7 +24,7 @@ from fieldfit.report.digits import (
     stated,
     value_with_band,
 )
-from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+from fieldfit.report.finding import Finding, ReachFinding, ScreenedLog
 
 Row = tuple[str, ...]
 ACROSS = 7
@@ -114,7 +115,7 @@ def plateaus(reach: ReachFinding) -> Table | None:
     return Table(head=head, rows=tuple(rows))
 
 
-def levelling(readings: ReachReadings) -> str:
+def levelling(readings: ReachReadings | ReachHeads) -> str:
     """Return in words how the gauges were levelled."""
     level = readings.levelling
     if level is None:
@@ -169,7 +170,7 @@ def _budget_row(entry: BudgetEntry) -> Row:
     )
 
 
-def rows(campaign: CampaignFinding) -> Table:
+def rows(campaign: ScreenedLog) -> Table:
     """Return how many rows were used, and how many set aside for which reason."""
     total, screening = campaign.log.line.size, campaign.screening
     still = np.isin(screening.plateau, campaign.plateaus.number[campaign.plateaus.static]) & (screening.plateau > 0)

@@ -11,7 +11,7 @@ from fieldfit.field.readings import Screening
 from fieldfit.field.section import Section
 from fieldfit.report.figures import style
 from fieldfit.report.figures.clock import clock_ticks
-from fieldfit.report.finding import CampaignFinding
+from fieldfit.report.finding import ScreenedLog
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -24,13 +24,13 @@ LANE_MM = 4.6
 """Height of one lane."""
 
 
-def rows(campaign: CampaignFinding, section: Section) -> Figure:
+def rows(campaign: ScreenedLog, section: Section) -> Figure:
     """Draw flow and pressures over time, with a lane for the plateaus and one for each reason of set-aside rows.
 
     Parameters
     ----------
-    campaign : CampaignFinding
-        What one log says.
+    campaign : ScreenedLog
+        A log and what became of its rows.
     section : Section
         Names the taps.
 
@@ -62,7 +62,7 @@ def rows(campaign: CampaignFinding, section: Section) -> Figure:
     return figure
 
 
-def _flow(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
+def _flow(ax: Axes, campaign: ScreenedLog, time: Array) -> None:
     """Draw the flow, the used rows darker."""
     flow = campaign.log.flow_m3_s * 1e3
     style.frame(ax, (0.0, 1.0), _range(flow, campaign.screening), (6, 4))
@@ -70,7 +70,7 @@ def _flow(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
     style.label(ax, "", "flow [L/s]")
 
 
-def _pressures(ax: Axes, campaign: CampaignFinding, section: Section, time: Array) -> None:
+def _pressures(ax: Axes, campaign: ScreenedLog, section: Section, time: Array) -> None:
     """Draw the pressures, each named at its last value."""
     kilopascals = campaign.log.pressure_pa * 1e-3
     style.frame(ax, (0.0, 1.0), _range(kilopascals, campaign.screening), (6, 4))
@@ -135,7 +135,7 @@ def _off_scale(ax: Axes, time: Array, values: Array) -> None:
             ax.plot(start, edges, mark, color=style.ASIDE, markersize=4.0, clip_on=False)
 
 
-def _lanes(ax: Axes, campaign: CampaignFinding, time: Array) -> None:
+def _lanes(ax: Axes, campaign: ScreenedLog, time: Array) -> None:
     """Draw plateaus and set-aside rows, one lane each, with their number of rows."""
     screening, plateaus = campaign.screening, campaign.plateaus
     names = [reason for reason, _ in screening.counts]
