@@ -10,9 +10,9 @@ import numpy as np
 
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.errors import InputError
+from fieldfit.field.campaign_files import gather_parts, read_campaign_log
 from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
 from fieldfit.field.log import Log
-from fieldfit.field.log_file import read_log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
 from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_readings
@@ -59,6 +59,7 @@ def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
 
 def assess_each(section: Section, logs: tuple[str | Path, ...]) -> list[CampaignFinding]:
     """Take every log from its rows to what is found of each reach."""
+    section, logs = gather_parts(section, logs)
     return [_campaign(section, path, date) for path, date in logs_to_read(section, logs)]
 
 
@@ -90,7 +91,7 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
 
 def read_campaign(section: Section, path: Path) -> tuple[Log, Screening, Plateaus]:
     """Read one log and part its rows into plateaus and rows set aside: what screening and assessing begin with."""
-    log = read_log(path, section)
+    log = read_campaign_log(path, section)
     bridged, dead = bridge_dead_taps(log, section)
     screening = screen(bridged, section)
     return log, screening, without_dead_taps(summarise(bridged, screening, section, _weight(section)), screening, dead)
