@@ -8,7 +8,7 @@ from fieldfit import __version__
 from fieldfit.decisions.acceptance import Acceptance
 from fieldfit.field.section import Section
 from fieldfit.report import words
-from fieldfit.report.digits import decimals, fixed, known, litres, percent, significant
+from fieldfit.report.digits import decimals, fixed, known, litres, percent, plus_minus, significant
 from fieldfit.report.finding import ReachFinding
 from fieldfit.report.handover import Handover, ReachVerdict
 from fieldfit.report.sheet import Block, Heading, Paragraph, Places, Sheet, Table
@@ -158,7 +158,7 @@ def _figures(found: Acceptance) -> tuple[tuple[str, str], ...]:
     """Return the figures of the verdict by name."""
     contract = found.contract
     rows = [
-        ("Asked", f"{NAMES[contract.subject]} {_from(found)} {_value(found, contract.limit)}"),
+        ("Asked", f"{NAMES[contract.subject]} of at {_most(found)} {_value(found, contract.limit)}"),
         ("Reduced to", _basis(found)),
         ("Measured", f"{_value(found, found.value)} ({_band(found)}, 95 %); the range holds {found.band_why}"),
         ("Passes", f"{_from(found)} {_value(found, found.acceptance_limit)}"),
@@ -200,6 +200,11 @@ def _basis(found: Acceptance) -> str:
     )
 
 
+def _most(found: Acceptance) -> str:
+    """Return which way the contract limits."""
+    return "least" if found.contract.subject == "c" else "most"
+
+
 def _from(found: Acceptance) -> str:
     """Return on which side of a limit the contract is kept."""
     return "from" if found.contract.subject == "c" else "up to"
@@ -234,20 +239,21 @@ def _readings(reach: ReachFinding) -> Table:
         (
             str(int(number)),
             significant(flow * 1e3),
-            f"{significant(head)} ± {significant(1.96 * standard, 2)}",
-            significant(c),
+            plus_minus(head, standard),
+            plus_minus(c, c * relative),
         )
-        for number, flow, head, standard, c in zip(
+        for number, flow, head, standard, c, relative in zip(
             values.number,
             values.flow_m3_s,
             values.friction_loss_m,
             values.friction_loss_standard_m,
             values.hazen_williams_c,
+            values.hazen_williams_relative,
             strict=True,
         )
     )
-    head = ("plateau", "flow [L/s]", "head loss to friction [m], ± 95 %", "C as laid [–]")
-    return Table(head=head, rows=rows, widths=(0.16, 0.22, 0.4, 0.22))
+    head = ("plateau", "flow [L/s]", "head loss to friction [m], ± 95 %", "C by the bore as laid [–], ± 95 %")
+    return Table(head=head, rows=rows, widths=(0.13, 0.17, 0.35, 0.35))
 
 
 def _instruments(section: Section) -> tuple[tuple[str, str], ...]:

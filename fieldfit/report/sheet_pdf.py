@@ -213,12 +213,12 @@ def _row(pen: _Pen, block: Table, cells: tuple[str, ...], colour: str = INK) -> 
     columns = [
         wrapped(cell, pen.size * scale, width * share - gap) for cell, share in zip(cells, block.widths, strict=True)
     ]
-    height = pen.line_mm * scale * max(len(lines) for lines in columns) + 0.25 * pen.line_mm
+    height = pen.line_mm * scale * max(len(lines) for lines in columns) + 0.4 * pen.line_mm
     height = max(height, 1.75 * pen.line_mm) if block.form else height
     pen.room(height)
     for left, lines in zip(lefts, columns, strict=True):
         for number, line in enumerate(lines):
-            at = (left + (0.8 if block.form else 0.0), pen.y - 0.15 * pen.line_mm - number * pen.line_mm * scale)
+            at = (left + (0.8 if block.form else 0.0), pen.y - 0.3 * pen.line_mm - number * pen.line_mm * scale)
             pen.put(line, at, scale, colour=colour)
     if block.form:
         for x in (*lefts, pen.right):
