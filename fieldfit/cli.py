@@ -90,6 +90,31 @@ def accept(
         raise typer.Exit(NO_ANSWER)
 
 
+@app.command(epilog="Example: fieldfit screen kiln-supply 2026-05-12.csv --json screening.json")
+def screen(
+    section: Annotated[Path, typer.Argument(help="Folder of the test section, or its section.toml.")],
+    logs: Annotated[list[Path] | None, typer.Argument(help="Logs to use instead of the folder's own.")] = None,
+    out: Annotated[Path, typer.Option("--out", help="Folder for the page.")] = Path("reports"),
+    json: Annotated[Path | None, typer.Option("--json", help="Write the record to this file too.")] = None,
+) -> None:
+    """Look at a log before any fit: what became of every row, and whether it is good enough to assess."""
+    from fieldfit.report.screening.files import write_screen_json, write_screening
+    from fieldfit.report.screening.summary import screen_summary
+    from fieldfit.screening import screen_logs
+
+    finding = screen_logs(section, *(logs or ()))
+    with _writing("--out", out):
+        written = write_screening(finding, out)
+    if json is not None:
+        with _writing("--json", json):
+            written = (*written, write_screen_json(finding, json))
+    typer.echo(screen_summary(finding))
+    for path in written:
+        typer.echo(f"Written: {path}", err=True)
+    if not finding.good:
+        raise typer.Exit(NO_ANSWER)
+
+
 @app.command(epilog="Example: fieldfit start kiln-supply")
 def start(
     folder: Annotated[Path, typer.Argument(help="Folder of the new test section; made when it is not there.")],

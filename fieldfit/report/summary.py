@@ -26,7 +26,7 @@ def summary(finding: Finding) -> str:
     str
         Lines without an end of line after the last; each further reach or campaign adds its own block.
     """
-    lines = [_title(finding.section)]
+    lines = [title(finding.section)]
     several = len(finding.campaigns) > 1 or len(finding.campaigns[0].reaches) > 1
     for campaign in finding.campaigns:
         for reach in campaign.reaches:
@@ -37,7 +37,8 @@ def summary(finding: Finding) -> str:
     return "\n".join(lines)
 
 
-def _title(section: Section) -> str:
+def title(section: Section) -> str:
+    """Return the section in one line."""
     material = section.material or "material unknown"
     # A name may hold line ends or control characters; a terminal must not obey them.
     name = " ".join("".join(letter if letter.isprintable() else " " for letter in section.name).split())

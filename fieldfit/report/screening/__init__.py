@@ -1,0 +1,1 @@
+"""What screening a log found, before any fit: checks, page, summary and record."""
