@@ -30,6 +30,7 @@ ABOUT = {
     "deposit": "What is known of a deposit, for its volume and mass.",
     "campaign": "A day of testing and its log: one such table each. Not needed when the log is named in the command.",
     "log": "How the logs are written, where they leave it open.",
+    "plan": "What is wanted of a test still to be made, for fieldfit plan.",
     "contract": "What a contract asks of the pipe, for fieldfit accept: one of c, roughness and head_loss.",
     "duty": "What the pipe must carry.",
     "water": "What the water is like: it tells how fast a pipe roughens when there is one campaign only.",

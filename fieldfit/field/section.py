@@ -15,6 +15,7 @@ from fieldfit.field.logger_clock import Logger
 from fieldfit.field.outlook import Changes, Outlook
 from fieldfit.field.raw_signal import RawSignal
 from fieldfit.field.uncertain import Accuracy, Uncertain
+from fieldfit.field.wishes import Wishes
 from fieldfit.hydraulics.liquids import Liquid
 
 
@@ -220,5 +221,7 @@ class Section:
     """How logs are to be read; None to decide by rule."""
     contract: Contract | None = None
     """What a contract asks of the pipe."""
+    wishes: Wishes | None = None
+    """What is wanted of a test still to be made."""
     assumed: tuple[str, ...] = ()
     """Sentences on what the program assumed because the file is silent."""

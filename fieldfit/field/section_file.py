@@ -26,6 +26,7 @@ from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liq
 from fieldfit.field.section_screen import read_screen_limits, read_screen_mode
 from fieldfit.field.section_survey import read_branches, read_meter_station, read_reach_pipes
 from fieldfit.field.section_taps import check_columns, read_meter, read_taps
+from fieldfit.field.section_wishes import read_wishes
 from fieldfit.field.toml_table import TomlTable, read_toml
 from fieldfit.field.units import shown
 
@@ -104,6 +105,7 @@ def read_section(path: str | Path) -> Section:
         screen_limits=read_screen_limits(top.table("screen")),
         screen_mode=read_screen_mode(top.table("screen")),
         contract=read_contract(top.table("contract")),
+        wishes=read_wishes(top.table("plan")),
         assumed=tuple(dict.fromkeys(said)),
     )
 
@@ -152,7 +154,12 @@ def _campaign(table: TomlTable, folder: Path, installed: dt.date | None) -> Camp
         raise InputError(seen, "Check both dates: year, month, day.").at(table.where("date"))
     logs = [folder / name for name in texts(table, "log")]
     return Campaign(
-        date=date, log=logs[0], parts=tuple(logs[1:]), cleaned=read_cleaned(table)[0], meter=table.text("meter"), changes=read_changes(table)
+        date=date,
+        log=logs[0],
+        parts=tuple(logs[1:]),
+        cleaned=read_cleaned(table)[0],
+        meter=table.text("meter"),
+        changes=read_changes(table),
     )
 
 

@@ -61,7 +61,9 @@ KEYS: tuple[Key, ...] = (
     _key("flow.signal", '"4-20 mA"', "raw signal of that column: 4-20 mA, 0-20 mA, 0-10 V, 2-10 V, 1-5 V or 0-5 V"),
     _key("flow.range", '"0 to 50 L/s"', "what that signal stands for at its ends"),
     _key("flow.device", '"pitot"', "meter, weir, bucket, pitot, orifice, a nozzle or a venturi; meter when left out"),
-    _key("flow.throat", '"60 mm ± 0.1 %"', "opening of an orifice, nozzle or venturi whose pressure difference is logged"),
+    _key(
+        "flow.throat", '"60 mm ± 0.1 %"', "opening of an orifice, nozzle or venturi whose pressure difference is logged"
+    ),
     _key("flow.throat_pipe", '"100 mm ± 0.4 %"', "inside diameter of the pipe that sits in; the bore when left out"),
     _key("flow.tappings", '"corner"', "pressure tappings of an orifice: corner, flange, or D and D/2"),
     _key("flow.station", '"0 m"', "where the meter stands along the pipe; needed only with branches above it"),
@@ -139,6 +141,17 @@ KEYS: tuple[Key, ...] = (
     _key("campaign.gauge_accuracy", '"0.1 % of 6 bar"', "how far those gauges may be off, where it differs"),
     _key("campaign.recalibrated", '["MAG-118"]', "instruments calibrated anew since the campaign before, by serial"),
     _key("campaign.note", '"after the drought"', "anything the reader should know of that day"),
+    _key("plan.c", '"3 %"', "wanted 95 % half-width of C"),
+    _key("plan.roughness", '"30 %"', "wanted 95 % half-width of the roughness, by the readings alone"),
+    _key("plan.flow", '"30 L/s"', "largest flow there is", required=True),
+    _key("plan.static", '"4.5 bar"', "gauge pressure at the first tap at rest", required=True),
+    _key("plan.supply_loss", '"0.5 bar"', "what that pressure falls by at the largest flow"),
+    _key("plan.residual", '"140 kPa"', "least pressure to be kept anywhere; 140 kPa (20 psi) when left out"),
+    _key("plan.flows", "6", "number of flows to hold"),
+    _key("plan.hold", '"5 min"', "time each flow is held once it is steady"),
+    _key("plan.scatter", '"0.5 kPa"', "scatter of a single reading of the pressure difference"),
+    _key("plan.gauges", '"0.1 % of 10 bar; 0.25 % of 10 bar"', "gauges that could be taken, parted by semicolons"),
+    _key("plan.meters", '"0.5 % of reading; 2 % of reading"', "meters that could be taken, parted by semicolons"),
     _key("contract.c", "130", "least Hazen–Williams C; this, roughness or head_loss"),
     _key("contract.roughness", '"0.1 mm"', "greatest roughness; this, c or head_loss"),
     _key(
@@ -182,7 +195,20 @@ KEYS: tuple[Key, ...] = (
 )
 """Every key, table by table."""
 
-TABLES = ("flow", "differential", "log", "duty", "deposit", "correlation", "screen", "contract", "water", "growth", "threshold")
+TABLES = (
+    "flow",
+    "differential",
+    "log",
+    "duty",
+    "deposit",
+    "correlation",
+    "screen",
+    "contract",
+    "plan",
+    "water",
+    "growth",
+    "threshold",
+)
 """Tables that may stand once."""
 LISTS = ("tap", "outlet", "fitting", "logger", "reach", "branch", "bore_evidence", "campaign")
 """Tables that may stand several times."""

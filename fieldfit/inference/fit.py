@@ -170,6 +170,37 @@ def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
     return float(misfit @ misfit + u @ u)
 
 
+def fit_known(model: HeadModel, ln_friction: float) -> Fit:
+    """Return what a fit would say of a wall that is known, to first order: for tests still to be made.
+
+    Parameters
+    ----------
+    model : HeadModel
+        The equation, with readings that the known wall would give.
+    ln_friction : float
+        ln f at the reference [-].
+
+    Returns
+    -------
+    Fit
+        Shared errors at zero, intervals by the linearised uncertainty, nothing to judge the scatter by.
+    """
+    u, noise = np.zeros(len(model.errors.names)), model.readings.random_m
+    share, standard = _linearised(model, noise, ln_friction, u)
+    half = NORMAL_95 * standard
+    return Fit(
+        model=model,
+        ln_friction=ln_friction,
+        u=u,
+        random_m=noise,
+        chi_square=0.0,
+        reduced_chi_square=None,
+        interval=(ln_friction - half, ln_friction + half),
+        share=share,
+        standard=standard,
+    )
+
+
 def covariance(fit: Fit, better: Array | None = None) -> Array:
     """Return the covariance of ln f at the reference and of the shared errors, (1 + M, 1 + M), at the best point.
 
