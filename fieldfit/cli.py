@@ -115,6 +115,31 @@ def screen(
         raise typer.Exit(NO_ANSWER)
 
 
+@app.command(epilog="Example: fieldfit trend mill-rise --out reports")
+def trend(
+    section: Annotated[Path, typer.Argument(help="Folder of the test section, or its section.toml.")],
+    logs: Annotated[list[Path] | None, typer.Argument(help="Logs to use instead of the folder's own.")] = None,
+    out: Annotated[Path, typer.Option("--out", help="Folder for the reports.")] = Path("reports"),
+    json: Annotated[Path | None, typer.Option("--json", help="Write the record to this file too.")] = None,
+) -> None:
+    """Say how fast a pipe worsens, and when it falls short, from all its campaigns together."""
+    from fieldfit.report.files import write_json, write_trend
+    from fieldfit.report.trend_summary import trend_summary
+    from fieldfit.trend import trend as run
+
+    finding = run(section, *(logs or ()))
+    with _writing("--out", out):
+        written = write_trend(finding, out)
+    if json is not None:
+        with _writing("--json", json):
+            written = (*written, write_json(finding, json))
+    typer.echo(trend_summary(finding))
+    for path in written:
+        typer.echo(f"Written: {path}", err=True)
+    if not finding.ageing:
+        raise typer.Exit(NO_ANSWER)
+
+
 @app.command(epilog="Example: fieldfit start kiln-supply")
 def start(
     folder: Annotated[Path, typer.Argument(help="Folder of the new test section; made when it is not there.")],

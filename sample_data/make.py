@@ -6,6 +6,7 @@ in ``tests/``, which shares nothing with the program, so what the program finds 
 
 import datetime as dt
 import sys
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -13,11 +14,13 @@ import numpy as np
 HERE = Path(__file__).resolve().parent
 sys.path.insert(0, str(HERE.parent / "tests"))
 
+from campaign_simulator import Campaign, simulate_campaigns  # noqa: E402
 from crew import FOOT, GPM, INCH, PLANT, PSI, STREET, WORKS, log_text, sheet_text  # noqa: E402
 from instruments import Gauge, Kit, Limits, Meter, Pipe, Plan  # noqa: E402
 from simulator import draw_errors, simulate  # noqa: E402
 
 SEED = 20260520
+MILL_RISE_DAYS = ("2008-05-14", "2013-09-24", "2018-04-11", "2018-06-05", "2026-05-07")
 CUBIC_METRE_PER_HOUR = 1.0 / 3600.0
 
 KILN_COOLING = """\
@@ -151,6 +154,78 @@ accuracy = "EN 837-1 class 0.6 of 6 bar"
 gauge = "CP-2"
 """
 
+MILL_RISE = """\
+# The main up Mill Rise, Wexhollow: five campaigns in eighteen years, the same two gauges in the same box.
+name = "Mill Rise main"
+material = "uncoated cast iron"
+installed = 1981-05-18
+bore = "150.0 mm ± 0.7 %"
+
+[flow]
+column = "flow"
+accuracy = "1 % of reading"
+meter = "MAG-88"
+
+[[tap]]
+column = "upstream"
+station = "0 m ± 0.2 m"
+elevation = "18.34 m ± 0.02 m"
+accuracy = "0.1 % of 6 bar"
+gauge = "PT-3"
+
+[[tap]]
+column = "downstream"
+station = "340 m ± 0.2 m"
+elevation = "21.07 m ± 0.02 m"
+accuracy = "0.1 % of 6 bar"
+gauge = "PT-4"
+
+[[fitting]]
+name = "bends, 45 degrees"
+k = "0.3 ± 30 %"
+count = 3
+
+[[campaign]]
+date = 2008-05-14
+log = "2008-05-14.csv"
+
+[[campaign]]
+date = 2013-09-24
+log = "2013-09-24.csv"
+
+[[campaign]]
+date = 2018-04-11
+log = "2018-04-11.csv"
+meter = "MAG-140"                    # the old meter had been struck by lightning
+meter_accuracy = "0.5 % of reading"
+
+[[campaign]]
+date = 2018-06-05
+log = "2018-06-05.csv"
+meter = "MAG-140"
+meter_accuracy = "0.5 % of reading"
+cleaned = 2018-05-22
+promised_c = 110
+
+[[campaign]]
+date = 2026-05-07
+log = "2026-05-07.csv"
+meter = "MAG-140"
+meter_accuracy = "0.5 % of reading"
+
+[water]
+langelier = -1.3
+
+[duty]
+flow = "18 L/s"
+head = "6 m"
+
+[threshold]
+c = 95
+capacity = "19 L/s"
+by = 2034-01-01
+"""
+
 
 def kiln_cooling():
     """Plant line, clearly rougher than new: logger at 2 s, eight flows, one of them cut short by a valve."""
@@ -234,6 +309,32 @@ def clay_pit():
     return day_of("clay_pit", 4, pipe, kit, plan)
 
 
+def mill_rise():
+    """Street main over eighteen years: 0.055 mm a year since 1981, cleaned in 2018, 0.09 mm a year since."""
+    pipe = Pipe(bore_m=0.150, length_m=340.0, roughness_m=0.26e-3, fitting_k=0.9, elevation_m=(18.34, 21.07))
+    kit = Kit(
+        gauge=Gauge(full_scale_pa=6e5, limit=0.001, step_pa=50.0, noise_pa=180.0),
+        meter=Meter(limit=0.01, step_m3_s=1e-5),
+        limits=Limits(bore=0.007, station_m=0.2, elevation_m=0.02, fitting_k=0.3, temperature_k=0.5),
+    )
+    plan = Plan(
+        flows_m3_s=tuple(1e-3 * flow for flow in (9.0, 13.0, 17.0, 21.0, 25.0)),
+        dwell_s=100.0,
+        ramp_s=40.0,
+        interval_s=5.0,
+        supply_pa=4.3e5,
+        source_loss_pa=0.5e5,
+    )
+    campaigns = (
+        Campaign(roughness_m=1.744e-3, temperature_degc=10.0),
+        Campaign(roughness_m=2.040e-3, temperature_degc=16.0),
+        Campaign(roughness_m=2.290e-3, temperature_degc=8.0, meter=replace(kit.meter, limit=0.005)),
+        Campaign(roughness_m=0.620e-3, temperature_degc=13.0),
+        Campaign(roughness_m=1.333e-3, temperature_degc=11.0),
+    )
+    return simulate_campaigns(np.random.default_rng([SEED, 5]), pipe, kit, plan, campaigns)
+
+
 def day_of(name, number, pipe, kit, plan):
     """Draw the day's errors and readings from the section's own stream, and keep them under the folder's name."""
     rng = np.random.default_rng([SEED, number])
@@ -260,6 +361,11 @@ def street_hand(text):
     rows[35][1] = ""
     rows[55][0] = ""
     return "\n".join(";".join(row) for row in rows) + "\n"
+
+
+def named(hill):
+    """Name the campaigns up Mill Rise by folder and date."""
+    return {f"mill_rise {date}": day for date, day in hill.items()}
 
 
 def truth_row(name, day):
@@ -294,11 +400,19 @@ def main():
         "heron_lane": (HERON_LANE, "2026-05-06.csv", lane),
         "clay_pit": (CLAY_PIT, "sheet.csv", sheet_text(days["clay_pit"], PLANT)),
     }
+    hill = dict(zip(MILL_RISE_DAYS, mill_rise(), strict=True))
+    write(HERE / "mill_rise" / "section.toml", MILL_RISE)
+    for date, day in hill.items():
+        write(
+            HERE / "mill_rise" / f"{date}.csv", log_text(day, PLANT, start=dt.datetime.fromisoformat(f"{date}T09:00"))
+        )
     for folder, (section, log_name, log) in files.items():
         write(HERE / folder / "section.toml", section)
         write(HERE / folder / log_name, log)
     columns = "section,roughness_mm,equivalent_roughness_mm,bore_mm,length_m,meter_gain_percent,correlation_percent"
-    write(HERE / "truth.csv", "\n".join([columns, *(truth_row(*item) for item in days.items())]) + "\n")
+    write(
+        HERE / "truth.csv", "\n".join([columns, *(truth_row(*item) for item in {**days, **named(hill)}.items())]) + "\n"
+    )
 
 
 if __name__ == "__main__":

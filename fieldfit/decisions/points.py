@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.decisions.duty import Duty
-from fieldfit.decisions.visits import Visit
+from fieldfit.decisions.visits import Visit, events_between
 from fieldfit.hydraulics.friction import relative_roughness
 from fieldfit.hydraulics.hazen_williams import c_from_friction_factor
 from fieldfit.inference.campaigns import JointFit
@@ -80,7 +80,7 @@ def points(fit: JointFit, visits: Sequence[Visit], duty: Duty) -> tuple[Point, .
                 roughness_own_m=(apart[0], apart[2]),
                 c=c,
                 c_own=(c_apart[0], c_apart[2]),
-                events=visit.words,
+                events=events_between(visits[index - 1] if index else None, visit),
             )
         )
     return tuple(found)

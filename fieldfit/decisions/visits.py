@@ -54,21 +54,6 @@ class Visit:
         band = self.wall.friction_factor.measurement
         return float("nan") if band is None else float(np.log(band[1] / band[0])) / (2.0 * 1.959963984540054)
 
-    @property
-    def words(self) -> tuple[str, ...]:
-        """What happened since the campaign before, in words."""
-        changes, told = self.changes, []
-        if self.event == "lined":
-            told.append(f"lined with {changes.lining}" if changes.lining else "lined")
-        elif self.event == "cleaned":
-            told.append(f"cleaned on {changes.cleaned_on.isoformat()}" if changes.cleaned_on else "cleaned")
-        if self.campaign and self.campaign.meter:
-            told.append(f"meter {self.campaign.meter}")
-        told += [f"gauge {serial} at {column}" for column, serial in changes.gauges]
-        if changes.recalibrated:
-            told.append("calibrated anew: " + ", ".join(changes.recalibrated))
-        return tuple([*told, *(text for text in (changes.valve, changes.note) if text)])
-
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stage:
@@ -82,6 +67,38 @@ class Stage:
     """Number of its first campaign, from 0."""
     material: str | None
     """Material of the wall, as the new-pipe table calls it."""
+
+
+def events_between(before: Visit | None, visit: Visit) -> tuple[str, ...]:
+    """Return what happened between two campaigns, in words.
+
+    Parameters
+    ----------
+    before : Visit or None
+        The campaign before; None for the first.
+    visit : Visit
+        The later one.
+
+    Returns
+    -------
+    tuple of str
+        Nothing for what stayed the same.
+    """
+    changes, told = visit.changes, []
+    if visit.event == "lined":
+        told.append(f"lined with {changes.lining}" if changes.lining else "lined")
+    elif visit.event == "cleaned":
+        told.append(f"cleaned on {changes.cleaned_on.isoformat()}" if changes.cleaned_on else "cleaned")
+    if before is not None:
+        old, new = before.readings, visit.readings
+        if new.meter.serial != old.meter.serial:
+            told.append(f"meter {new.meter.serial or 'unknown'}")
+        for was, tap in ((old.upstream, new.upstream), (old.downstream, new.downstream)):
+            if tap.gauge != was.gauge:
+                told.append(f"gauge {tap.gauge or 'unknown'} at {tap.column}")
+    if changes.recalibrated:
+        told.append("calibrated anew: " + ", ".join(changes.recalibrated))
+    return tuple([*told, *(text for text in (changes.valve, changes.note) if text)])
 
 
 def check_dates(dates: Sequence[tuple[dt.date | None, str, bool]], installed: dt.date | None, where: str) -> None:

@@ -125,6 +125,35 @@ def write_handover(handover: Handover, folder: Path) -> tuple[Path, ...]:
     )
 
 
+def write_trend(finding: Finding, folder: Path) -> tuple[Path, ...]:
+    """Write the page of the ageing and the record into a folder, which is made when it is missing.
+
+    Parameters
+    ----------
+    finding : Finding
+        What was found, with its ageing.
+    folder : Path
+        Where to write.
+
+    Returns
+    -------
+    tuple of Path
+        The files: page first, then record.
+
+    Raises
+    ------
+    OSError
+        When the folder cannot be written; no new file is left behind.
+    """
+    from fieldfit.report.trend_page import trend_page
+
+    name = safe_name(finding.section.name)
+    texts = {f"{name}-trend.html": trend_page(finding), f"{name}-trend.json": record_json(finding)}
+    folder = Path(folder)
+    folder.mkdir(parents=True, exist_ok=True)
+    return write_whole({folder / file: text for file, text in texts.items()})
+
+
 def write_json(finding: Finding, path: Path) -> Path:
     """Write the record alone, whole or not at all.
 

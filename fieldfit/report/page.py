@@ -109,6 +109,7 @@ def _context(finding: Finding, campaigns: list[dict[str, Any]]) -> dict[str, Any
         "title": section.name.strip() or "Pipe section",
         "subtitle": _subtitle(finding),
         "several": several,
+        "trend": _trend(finding),
         "overview": tables.overview(finding, names) if several else None,
         "campaigns": campaigns,
         "inputs": tables.inputs(section),
@@ -120,6 +121,15 @@ def _context(finding: Finding, campaigns: list[dict[str, Any]]) -> dict[str, Any
         "turbulent": f"{TURBULENT_LIMIT:.0f}",
         "versions": versions(),
     }
+
+
+def _trend(finding: Finding) -> dict[str, Any] | None:
+    """Return what is printed of the ageing, or None without any."""
+    if not finding.ageing and not finding.no_ageing:
+        return None
+    from fieldfit.report.trend_page import trend_block
+
+    return trend_block(finding)
 
 
 def _subtitle(finding: Finding) -> str:

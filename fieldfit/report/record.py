@@ -11,6 +11,7 @@ from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.section import Section
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Wall
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+from fieldfit.report.trend_record import ageing_record
 
 SCHEMA = 1
 """Number of the record's layout: a key is never renamed under the same number."""
@@ -37,7 +38,7 @@ def record(finding: Finding) -> Record:
         "fieldfit": __version__,
         "section": _section(finding.section),
         "campaigns": [_campaign(campaign) for campaign in finding.campaigns],
-        "ageing": None,
+        "ageing": ageing_record(finding),
         "decisions": None,
     }
 
