@@ -1,0 +1,87 @@
+"""Tables of rival explanations and of the bias stress test."""
+
+from __future__ import annotations
+
+from fieldfit.decisions.stress_test import LARGEST, Stress
+from fieldfit.inference.causes import NOTHING
+from fieldfit.inference.explanations import Explanations
+from fieldfit.inference.telling_apart import named
+from fieldfit.report import explanation_words as words
+from fieldfit.report.digits import fixed, percent, significant
+from fieldfit.report.tables import Table
+
+SHOWN = 0.01
+"""Probability below which a cause stands in the last row with all such [-]."""
+
+
+def ranking(found: Explanations, bore_m: float) -> Table:
+    """Return each cause with its probability, its size, and how it fits."""
+    shown = [
+        one
+        for index, one in enumerate(found.ranked)
+        if index == 0 or one.probability >= SHOWN or named(one.causes) in found.alike
+    ]
+    rows = [
+        (
+            "nothing unusual" if one.causes == (NOTHING,) else " with ".join(one.causes),
+            percent(one.probability),
+            words.sizes(one, bore_m),
+            words.fit(one),
+        )
+        for one in shown
+    ]
+    rest = [one for one in found.ranked if one not in shown]
+    if rest:
+        names = ", ".join("wall as new" if one.causes == (NOTHING,) else " with ".join(one.causes) for one in rest)
+        rows.append((names, percent(sum(one.probability for one in rest)), "", "together"))
+    return Table(head=("cause", "probability", "how large (95 %)", "how it fits"), rows=tuple(rows))
+
+
+def actions(found: Explanations) -> Table | None:
+    """Return what would part the first cause from those that cannot be told from it."""
+    if not found.alike or not found.actions:
+        return None
+    rows = []
+    for one in found.actions:
+        far = f"over {words.CLEAR:.0f}" if one.separation > words.CLEAR else significant(one.separation, 2)
+        rows.append((one.text, f"{one.parts[0]} from {one.parts[1]}", far))
+    return Table(head=("what to do", "it parts", "standard errors apart"), rows=tuple(rows))
+
+
+def stress_lines(stress: tuple[Stress, ...]) -> tuple[str, ...]:
+    """Return one sentence for each input and part of the finding."""
+    return tuple(_stress_line(one) for one in stress)
+
+
+def _stress_line(one: Stress) -> str:
+    """Say how far off one input would have to be."""
+    turns = f"to turn ‘{one.finding}’ into ‘{one.becomes}’"
+    if one.error is None or one.becomes is None:
+        far = f"{100.0 * LARGEST:.0f} %" if one.unit == "relative" else "three times the largest head loss"
+        return f"{_SUBJECTS[one.input]}: no error up to {far} changes ‘{one.finding}’."
+    sign = "high" if one.error > 0.0 else "low"
+    size = abs(one.error)
+    if one.unit == "relative":
+        how = f"{significant(100.0 * size, 2)} % too {_LARGE[sign] if one.input in ('bore', 'length') else sign}"
+    else:
+        how = f"{significant(size, 2)} m of head too {sign}"
+    times = one.times_limit
+    beyond = "" if times is None else f", {fixed(times, 1 if times < 10.0 else 0)} times its limit"
+    return f"{_SUBJECTS[one.input]} would have to {_VERBS[one.input]} {how}{beyond}, {turns}."
+
+
+_SUBJECTS = {
+    "meter": "The meter",
+    "bore": "The bore",
+    "length": "The length",
+    "elevations": "The difference of elevations",
+    "gauges": "The difference of the gauges",
+}
+_VERBS = {
+    "meter": "read",
+    "bore": "be stated",
+    "length": "be stated",
+    "elevations": "be stated",
+    "gauges": "read",
+}
+_LARGE = {"high": "large", "low": "small"}
