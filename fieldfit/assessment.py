@@ -9,6 +9,7 @@ from pathlib import Path
 import numpy as np
 
 from fieldfit.decisions.new_pipe import compare_with_new
+from fieldfit.decisions.stress_test import stress_test
 from fieldfit.errors import InputError
 from fieldfit.field.campaign_files import gather_parts, read_campaign_log
 from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
@@ -138,4 +139,5 @@ def _assess_reach(section: Section, readings: ReachReadings, every: ReachReading
         wall=wall,
         new_pipe=new_pipe,
         explanations=explain(every, section.correlation, new_roughness(material)),
+        stress=stress_test(readings, wall, section.correlation, new_pipe),
     )

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Protocol
 
 from fieldfit.decisions.new_pipe import NewPipeComparison
+from fieldfit.decisions.stress_test import Stress
 from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, ReachReadings, Screening
 from fieldfit.field.section import Campaign, Section
@@ -55,6 +56,8 @@ class ReachFinding:
     """Against new pipe; None when the material is unknown or there is no estimate."""
     explanations: Explanations | None = None
     """What else could explain the readings; None without a turbulent reading."""
+    stress: tuple[Stress, ...] = ()
+    """How wrong each input would have to be to change the finding; empty without an estimate."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

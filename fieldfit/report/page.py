@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Any
 
 from fieldfit import __version__
 from fieldfit.hydraulics.regime import LAMINAR_LIMIT, TURBULENT_LIMIT
-from fieldfit.report import captions, digits, tables, words
+from fieldfit.report import captions, digits, explanation_tables, explanation_words, tables, words
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.strips import strips
 
@@ -200,6 +200,27 @@ def _reach(finding: Finding, campaign: CampaignFinding, place: tuple[int, int]) 
         else f"Reduced χ² is {digits.significant(chi, 2)}, with {wall.degrees_of_freedom} degrees of freedom.",
         "levelling": tables.levelling(readings),
         "budget": tables.budget(reach),
+        "explanations": _explanations(reach, f"c{place[0]}r{place[1]}e"),
+        "stress": explanation_tables.stress_lines(reach.stress),
+    }
+
+
+def _explanations(reach: ReachFinding, name: str) -> dict[str, Any] | None:
+    """Return what is printed of rival explanations, drawn only where there is a rival to see."""
+    from fieldfit.report import figures
+
+    found = reach.explanations
+    if found is None:
+        return None
+    figure = None
+    if found.alike or not found.nothing_unusual:
+        text = explanation_words.caption(found)
+        figure = {"name": name, "text": text, "figure": figures.explanations(found)}
+    return {
+        "paragraph": explanation_words.paragraph(found),
+        "ranking": explanation_tables.ranking(found, reach.readings.bore.value),
+        "figure": figure,
+        "actions": explanation_tables.actions(found),
     }
 
 
@@ -227,4 +248,6 @@ def _figures(campaign: CampaignFinding, reach: ReachFinding, name: str) -> list[
 
 def _shown(campaign: dict[str, Any]) -> list[dict[str, Any]]:
     """Return all figures of a campaign."""
-    return [figure for reach in campaign["reaches"] for figure in reach["figures"]] + [campaign["log_figure"]]
+    rivals = [reach["explanations"]["figure"] for reach in campaign["reaches"] if reach["explanations"]]
+    several = [figure for reach in campaign["reaches"] for figure in reach["figures"]]
+    return several + [figure for figure in rivals if figure] + [campaign["log_figure"]]

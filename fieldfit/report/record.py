@@ -10,6 +10,7 @@ from fieldfit import __version__
 from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.section import Section
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Wall
+from fieldfit.report.explanation_record import explanations_record, stress_record
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.trend_record import ageing_record
 
@@ -117,7 +118,7 @@ def _reach(reach: ReachFinding) -> Record:
         "new_pipe": _new_pipe(reach.new_pipe),
         "reduced_chi_square": _number(wall.reduced_chi_square),
         "budget": [_share(entry) for entry in wall.budget],
-        "explanations": None,
+        "explanations": explanations_record(reach.explanations),
         "because": wall.because,
         "length_m": _number(readings.length.value),
         "velocity_m_s": _number(wall.velocity_m_s),
@@ -125,6 +126,7 @@ def _reach(reach: ReachFinding) -> Record:
         "roughness_by_other_laws_mm": {name: _number(value, 1e3) for name, value in wall.other_laws},
         "monte_carlo": _monte_carlo(wall),
         "readings": _readings(wall.plateaus),
+        "stress": stress_record(reach.stress),
     }
 
 

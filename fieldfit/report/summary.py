@@ -5,7 +5,7 @@ from __future__ import annotations
 import textwrap
 
 from fieldfit.field.section import Section
-from fieldfit.report import digits, words
+from fieldfit.report import digits, explanation_words, words
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 
 WIDTH = 88
@@ -56,7 +56,7 @@ def _reach(reach: ReachFinding) -> list[str]:
     lines = folded("state", f"{wall.state}: {verdict[0].lower()}{verdict[1:]}" if new else wall.state)
     if wall.state == "no estimate":
         lines += folded("why", words.sentence(wall.because))
-        return lines + folded("next", words.sentence(wall.advice))
+        return lines + folded("next", words.sentence(wall.advice)) + _explanations(reach)
     lines += _roughness(reach)
     c = wall.hazen_williams_c
     if c.best is not None and c.measurement is not None and c.with_correlation is not None:
@@ -72,10 +72,20 @@ def _reach(reach: ReachFinding) -> list[str]:
         lines += folded(
             "", f"probability that it loses over {over} more than new: {digits.percent(new.probability_worse)}"
         )
+    lines += _explanations(reach)
     if wall.budget:
         top = sorted(wall.budget, key=lambda entry: -entry.share)[:3]
         lines += folded("limited by", ", ".join(f"{entry.error} {digits.percent(entry.share)}" for entry in top))
     return lines
+
+
+def _explanations(reach: ReachFinding) -> list[str]:
+    """Return the most probable explanations, and what cannot be told apart."""
+    found = reach.explanations
+    if found is None:
+        return []
+    lines = folded("explained by", explanation_words.ranked(found))
+    return lines + (folded("", f"not to be told apart: {', '.join(found.alike)}") if found.alike else [])
 
 
 def _roughness(reach: ReachFinding) -> list[str]:

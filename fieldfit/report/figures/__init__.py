@@ -5,6 +5,7 @@ from __future__ import annotations
 from fieldfit.report.figures.budget import budget
 from fieldfit.report.figures.cloud import cloud
 from fieldfit.report.figures.curves import Curves, curves
+from fieldfit.report.figures.explanations import explanations
 from fieldfit.report.figures.friction_chart import friction_chart
 from fieldfit.report.figures.hazen_williams import hazen_williams
 from fieldfit.report.figures.head_loss import head_loss
@@ -18,6 +19,7 @@ __all__ = [
     "budget",
     "cloud",
     "curves",
+    "explanations",
     "friction_chart",
     "hazen_williams",
     "head_loss",
