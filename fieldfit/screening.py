@@ -13,11 +13,13 @@ from fieldfit.field.quantisation import channel_steps
 from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_heads
 from fieldfit.field.readings import Plateaus
+from fieldfit.field.row_screens import still_below
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
 from fieldfit.field.section_outlook import section_on
-from fieldfit.report.screening.checks import log_checks, reach_checks
 from fieldfit.report.screening.finding import CampaignScreen, ReachScreen, ScreenFinding
+from fieldfit.report.screening.log_checks import log_checks
+from fieldfit.report.screening.reach_checks import reach_checks
 
 
 def screen_logs(section: str | Path | Section, *logs: str | Path) -> ScreenFinding:
@@ -52,7 +54,8 @@ def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignScr
     named = [one for one in section.campaigns if one.log.name == path.name]
     section = section_on(section, named[0] if named else None)
     log, screening, plateaus = read_campaign(section, path)
-    reaches = tuple(_reach(section, plateaus, reach) for reach in range(len(section.taps) - 1))
+    moving = bool(np.any(np.abs(log.flow_m3_s) >= still_below(log, section)))
+    reaches = tuple(_reach(section, plateaus, reach, moving) for reach in range(len(section.taps) - 1))
     screening = set_plateaus_aside(screening, of_no_reach([_set_aside(reach) for reach in reaches]))
     steps = channel_steps(log, screening, section)
     return CampaignScreen(
@@ -66,14 +69,14 @@ def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignScr
     )
 
 
-def _reach(section: Section, plateaus: Plateaus, reach: int) -> ReachScreen:
+def _reach(section: Section, plateaus: Plateaus, reach: int, moving: bool) -> ReachScreen:
     """Look at one reach."""
     heads = reach_heads(plateaus, section, reach)
     return ReachScreen(
         upstream=section.taps[reach],
         downstream=section.taps[reach + 1],
         heads=heads,
-        checks=reach_checks(heads, section_of_reach(section, reach)),
+        checks=reach_checks(heads, section_of_reach(section, reach), moving),
     )
 
 

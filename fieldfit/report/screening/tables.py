@@ -30,7 +30,7 @@ def checks(found: tuple[Check, ...]) -> Table:
 def _value(value: float, check: Check) -> str:
     """Return a value of a check."""
     if check.what.startswith(PERCENT):
-        return percent(value) if 0.01 <= value <= 0.99 else f"{significant(100.0 * value, 2)} %"
+        return "all" if value == 1.0 else "none" if value == 0.0 else percent(value)
     if value == round(value) and abs(value) < 1e4:
         return fixed(value, 0)
     return significant(value, 2 if abs(value) < 100.0 else 3)

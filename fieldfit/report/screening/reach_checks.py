@@ -1,4 +1,4 @@
-"""Whether a log is good enough to assess: checks as data, each with what to do about it."""
+"""Whether the readings of a reach are good enough to assess: checks as data, each with what to do about it."""
 
 from __future__ import annotations
 
@@ -7,21 +7,17 @@ from collections.abc import Iterator
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.field.log import Log
-from fieldfit.field.quantisation import ChannelSteps
 from fieldfit.field.reaches import ReachHeads
-from fieldfit.field.readings import Plateaus, Screening
-from fieldfit.field.screens import limit
+from fieldfit.field.screens import CRITICAL, LAMINAR, NEGATIVE, limit
 from fieldfit.field.section import Section
-from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 from fieldfit.report.digits import fixed, litres, percent, significant
-from fieldfit.report.screening.finding import Check, ReachScreen
+from fieldfit.report.screening.finding import Check
 
 Array = NDArray[np.float64]
 
 FLOWS = 3
 """Different flows without which one wrong reading cannot be told from the rest."""
-RANGE = 1.5
+FLOW_RANGE = 1.5
 """Largest over smallest flow under which the readings cannot show a wrong zero."""
 CLEAR = 5.0
 """Standard uncertainties that the largest head loss must stand clear of zero."""
@@ -33,15 +29,10 @@ DRIFT = 0.05
 """Share of the smallest head loss that the gauges may drift between statics."""
 IN_ORDER = 0.8
 """Share of pairs of flows of which the larger one must lose more head."""
-ASIDE = 0.5
-"""Share of rows set aside from which the log itself is in question."""
-INDEPENDENT = 3.0
-"""Independent rows without which a plateau does not know its own noise."""
-STEP = 0.02
-"""Share of the smallest head loss that the steps of the columns may leave uncertain."""
+LARGER = "Test at larger flows: only turbulent water feels the wall."
 
 
-def reach_checks(heads: ReachHeads, section: Section) -> tuple[Check, ...]:
+def reach_checks(heads: ReachHeads, section: Section, moving: bool) -> tuple[Check, ...]:
     """Return the checks of one reach.
 
     Parameters
@@ -50,35 +41,26 @@ def reach_checks(heads: ReachHeads, section: Section) -> tuple[Check, ...]:
         Head loss of every plateau.
     section : Section
         The test section.
+    moving : bool
+        Whether water flows in any row of the log, steady or not.
 
     Returns
     -------
     tuple of Check
         The needed ones first.
     """
-    found = [_flows(heads, section), _reynolds(heads, section), _clear(heads), *_order(heads, section)]
-    return tuple([*found, _range(heads), *_statics(heads)])
+    found = [_flows(heads, section, moving), _reynolds(heads, section), _clear(heads), *_order(heads, section)]
+    return tuple([*found, *_range(heads), *_statics(heads)])
 
 
-def log_checks(
-    log: Log,
-    screening: Screening,
-    plateaus: Plateaus,
-    reaches: tuple[ReachScreen, ...],
-    steps: tuple[ChannelSteps, ...],
-) -> tuple[Check, ...]:
-    """Return the checks of a log as a whole."""
-    return tuple([_aside(screening), *_independent(log, screening, plateaus), *_resolution(reaches, steps)])
-
-
-def _used(heads: ReachHeads) -> NDArray[np.bool_]:
+def used_plateaus(heads: ReachHeads) -> NDArray[np.bool_]:
     """Return which plateaus carry roughness."""
     return np.asarray(~heads.plateaus.static & (heads.reason == ""))
 
 
-def _flows(heads: ReachHeads, section: Section) -> Check:
+def _flows(heads: ReachHeads, section: Section, moving: bool) -> Check:
     """Count the different flows that carry roughness."""
-    flow = np.sort(heads.plateaus.flow_m3_s[_used(heads)])
+    flow = np.sort(heads.plateaus.flow_m3_s[used_plateaus(heads)])
     apart = np.diff(flow) > limit(section, "flow_step") / 2.0 * flow[1:]
     count = int(np.count_nonzero(apart)) + 1 if flow.size else 0
     enough = count >= FLOWS
@@ -91,7 +73,7 @@ def _flows(heads: ReachHeads, section: Section) -> Check:
         unit="-",
         passed=enough,
         because=f"{counted} {verb} steady, turbulent and clear of the gauges' uncertainty{_lost(heads)}.",
-        do="" if enough else _more_flows(heads, section),
+        do="" if enough else _more_flows(heads, section, moving),
         needed=True,
     )
 
@@ -105,14 +87,23 @@ def _lost(heads: ReachHeads) -> str:
     return f"; set aside: {', '.join(counted)}"
 
 
-def _more_flows(heads: ReachHeads, section: Section) -> str:
+def _more_flows(heads: ReachHeads, section: Section, moving: bool) -> str:
     """Return what would give more flows."""
-    if np.any(~heads.plateaus.static):
-        return "Take at least three flows, the largest as high as the supply allows and the smallest a third of it."
-    rows = int(limit(section, "plateau_rows"))
-    seconds = np.max(heads.plateaus.rows, initial=0)
-    hold = f"Let water flow, and hold each of three flows or more for at least {rows} rows of the logger, better two minutes."
-    return hold if seconds else f"{hold} If the flow cannot be held, log a day of ordinary service."
+    reasons = heads.reason[heads.reason != ""].tolist()
+    if not np.any(~heads.plateaus.static):
+        rows = int(limit(section, "plateau_rows"))
+        hold = f"old each of three flows or more for at least {rows} rows of the logger, better two minutes."
+        if not moving:
+            return f"Let water flow, and h{hold}"
+        return f"H{hold} If the flow cannot be held, log a day of ordinary service."
+    if reasons.count(NEGATIVE) > len(reasons) / 2.0:
+        return (
+            "Check whether the columns of the taps are swapped, or the stations counted against the flow: the pressure "
+            "rises along the pipe."
+        )
+    if reasons.count(LAMINAR) + reasons.count(CRITICAL) > len(reasons) / 2.0:
+        return LARGER
+    return "Take at least three flows, the largest as high as the supply allows and the smallest a third of it."
 
 
 def _reynolds(heads: ReachHeads, section: Section) -> Check:
@@ -133,7 +124,7 @@ def _reynolds(heads: ReachHeads, section: Section) -> Check:
         if highest is None
         else f"The largest steady flow is {litres(float(np.max(plateaus.flow_m3_s[flowing])))}, and it is "
         f"{'turbulent' if enough else 'not surely turbulent, so it does not feel the wall'}.",
-        do="" if enough else "Test at a larger flow: only turbulent water feels the wall.",
+        do="" if enough or highest is None else LARGER,
         needed=True,
     )
 
@@ -149,14 +140,14 @@ def _clear(heads: ReachHeads) -> Check:
         because = "Nothing levels the gauges: no static in the log, no elevation of both taps in the section file."
         do = "Read the gauges with the flow stopped, or survey both and write their elevations."
     elif best is None:
-        because, do = "No steady stretch has flow in it.", "Read the gauges while water flows."
+        because, do = "No steady stretch has flow in it.", ""
     else:
         where = int(np.argmax(ratio))
         because = (
             f"The best reading loses {significant(float(heads.head_loss_m[flowing][where]))} m, known to "
             f"±{significant(1.96 * float(heads.standard_m[flowing][where]), 2)} m."
         )
-        do = "Raise the flow, lengthen the section, or use finer gauges levelled on a static."
+        do = "Raise the flow, lengthen the section, or use finer gauges levelled on a static." if best > 0.0 else ""
     return Check(
         what="Largest head loss over its standard uncertainty",
         value=best,
@@ -171,7 +162,7 @@ def _clear(heads: ReachHeads) -> Check:
 
 def _order(heads: ReachHeads, section: Section) -> Iterator[Check]:
     """Look whether more flow loses more head, where there are pairs of flows that differ."""
-    used = _used(heads)
+    used = used_plateaus(heads)
     flow, head = heads.plateaus.flow_m3_s[used], heads.head_loss_m[used]
     apart = flow[:, None] - flow > limit(section, "flow_step") * flow
     if np.count_nonzero(apart) < FLOWS:
@@ -184,7 +175,7 @@ def _order(heads: ReachHeads, section: Section) -> Iterator[Check]:
         limit=IN_ORDER,
         unit="-",
         passed=enough,
-        because=f"{percent(share)} of all pairs{'' if enough else ': these pressures do not follow this flow'}.",
+        because=f"In {percent(share)} of all pairs{'' if enough else ': these pressures do not follow this flow'}.",
         do=""
         if enough
         else "Check that the columns belong together: taps, meter and clocks of the same test, in the right order.",
@@ -192,20 +183,20 @@ def _order(heads: ReachHeads, section: Section) -> Iterator[Check]:
     )
 
 
-def _range(heads: ReachHeads) -> Check:
+def _range(heads: ReachHeads) -> Iterator[Check]:
     """Hold the largest flow against the smallest."""
-    flow = heads.plateaus.flow_m3_s[_used(heads)]
-    ratio = float(np.max(flow) / np.min(flow)) if flow.size else None
-    enough = ratio is not None and ratio >= RANGE
-    return Check(
+    flow = heads.plateaus.flow_m3_s[used_plateaus(heads)]
+    if not flow.size:
+        return
+    ratio = float(np.max(flow) / np.min(flow))
+    enough = ratio >= FLOW_RANGE
+    yield Check(
         what="Largest flow over smallest",
         value=ratio,
-        limit=RANGE,
+        limit=FLOW_RANGE,
         unit="-",
         passed=enough,
-        because="No flow carries roughness."
-        if ratio is None
-        else f"From {litres(float(np.min(flow)))} to {litres(float(np.max(flow)))}"
+        because=f"From {litres(float(np.min(flow)))} to {litres(float(np.max(flow)))}"
         + ("." if enough else ": a wrong zero, a leak or a half-shut valve would look just like roughness."),
         do="" if enough else "Test at flows that differ by a factor of three.",
         needed=False,
@@ -247,7 +238,7 @@ def _statics(heads: ReachHeads) -> Iterator[Check]:
 
 def _drift(heads: ReachHeads) -> Iterator[Check]:
     """Hold the drift between statics against the smallest head loss."""
-    used = _used(heads)
+    used = used_plateaus(heads)
     if heads.levelling is None or heads.levelling.drift_m is None or not np.any(used):
         return
     drift, smallest = abs(heads.levelling.drift_m), float(np.min(heads.head_loss_m[used]))
@@ -267,67 +258,3 @@ def _drift(heads: ReachHeads) -> Iterator[Check]:
         do="" if fine else "Let the gauges settle, keep them out of the sun, and level them more often.",
         needed=False,
     )
-
-
-def _aside(screening: Screening) -> Check:
-    """Look at the share of rows set aside."""
-    rows = len(screening.reason)
-    aside = rows - screening.used
-    share = aside / rows
-    first = f", most of them for '{screening.counts[0][0]}'" if screening.counts else ""
-    return Check(
-        what="Share of rows set aside",
-        value=share,
-        limit=ASIDE,
-        unit="-",
-        passed=share <= ASIDE,
-        because=f"{aside} of {rows} rows are set aside{first}.",
-        do="" if share <= ASIDE else "See the timeline for where they lie, and hold each flow longer.",
-        needed=False,
-    )
-
-
-def _independent(log: Log, screening: Screening, plateaus: Plateaus) -> Iterator[Check]:
-    """Look at the shortest plateau; rows of a hand sheet stand for themselves."""
-    flowing = ~plateaus.static & (plateaus.rows > 1)
-    if log.kind == "sheet" or not np.any(flowing):
-        return
-    fewest = float(np.min(plateaus.independent_rows[:, flowing]))
-    number = int(plateaus.number[flowing][np.argmin(np.min(plateaus.independent_rows[:, flowing], axis=0))])
-    kind, part = ("Group", "time blocks") if screening.block is not None else ("Plateau", "rows")
-    yield Check(
-        what=f"Independent {part} of the shortest {kind.lower()}",
-        value=fewest,
-        limit=INDEPENDENT,
-        unit="-",
-        passed=fewest >= INDEPENDENT,
-        because=f"{kind} {number} is worth {significant(fewest, 2)} independent {part}.",
-        do="" if fewest >= INDEPENDENT else "Hold each flow longer: the noise of a short stretch is anyone's guess.",
-        needed=False,
-    )
-
-
-def _resolution(reaches: tuple[ReachScreen, ...], steps: tuple[ChannelSteps, ...]) -> Iterator[Check]:
-    """Hold the steps of the pressure columns against the smallest head loss."""
-    by_column = {one.column: one.standard for one in steps}
-    worst, told = -1.0, ""
-    for reach in reaches:
-        used = _used(reach.heads)
-        if np.any(used):
-            pascals = float(np.hypot(by_column[reach.upstream.column], by_column[reach.downstream.column]))
-            smallest = float(np.min(reach.heads.head_loss_m[used]))
-            left = pascals / (1000.0 * STANDARD_GRAVITY)
-            if smallest > 0.0 and left / smallest > worst:
-                worst = left / smallest
-                told = f"The gauges' steps leave ±{significant(1.96 * left, 2)} m in a smallest loss of {significant(smallest)} m."
-    if worst >= 0.0:
-        yield Check(
-            what="Steps of the gauges over the smallest head loss",
-            value=worst,
-            limit=STEP,
-            unit="-",
-            passed=worst <= STEP,
-            because=told,
-            do="" if worst <= STEP else "Log the pressures with more digits, or test at larger flows only.",
-            needed=False,
-        )
