@@ -140,6 +140,27 @@ def trend(
         raise typer.Exit(NO_ANSWER)
 
 
+@app.command(epilog="Example: fieldfit plan lantern-row --out plan")
+def plan(
+    section: Annotated[Path, typer.Argument(help="Folder of the test section, or its section.toml with a [plan].")],
+    out: Annotated[Path, typer.Option("--out", help="Folder for the plan and the test sheet.")] = Path("reports"),
+) -> None:
+    """Say before the trip what a test would tell, and write the sheet to take along."""
+    from fieldfit.decisions.planning import plan_test
+    from fieldfit.field.section_file import read_section
+    from fieldfit.report.files import write_plan
+    from fieldfit.report.plan_sheets import plan_summary
+
+    found = plan_test(read_section(section))
+    with _writing("--out", out):
+        written = write_plan(found, out)
+    typer.echo(plan_summary(found))
+    for path in written:
+        typer.echo(f"Written: {path}", err=True)
+    if not found.reached:
+        raise typer.Exit(NO_ANSWER)
+
+
 @app.command(epilog="Example: fieldfit start kiln-supply")
 def start(
     folder: Annotated[Path, typer.Argument(help="Folder of the new test section; made when it is not there.")],

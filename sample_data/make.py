@@ -84,6 +84,14 @@ station = "984 ft ± 1 ft"
 elevation = "207.9 ft ± 0.1 ft"
 accuracy = "ASME B40.100 grade 2A, 0-100 psi"
 gauge = "LR-2"
+
+[plan]
+c = "5 %"
+flow = "40 L/s"
+static = "60 psi"
+supply_loss = "8 psi"
+gauges = "ASME B40.100 grade 2A, 0-100 psi; ASME B40.100 grade A, 0-100 psi"
+meters = "2 % of reading; 5 % of reading"
 """
 
 HERON_LANE = """\

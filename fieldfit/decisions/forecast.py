@@ -27,6 +27,8 @@ AHEAD_YEARS = 10.0
 """Years over which the rate ahead is taken."""
 FAN_DRAWS = 2000
 DATES = (0.1, 0.5, 0.9)
+STEPS = 200
+"""Steps of probability in which the time of a crossing is kept."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -82,7 +84,7 @@ class Crossing:
     probability_by: float | None
     """Probability that it is crossed before that day [-]."""
     curve: tuple[tuple[float, float], ...]
-    """Years after the last test and probability that it is crossed by then."""
+    """Years after the last test and probability that it is crossed by then, at equal steps of probability."""
     not_before: dt.date | None
     """Day before which it is crossed with 2.5 % only; None for not within the horizon."""
 
@@ -245,7 +247,8 @@ def _crossing(
         at = float(ladder[min(int(share * len(ladder)), len(ladder) - 1)])
         return None if np.isinf(at) else last + dt.timedelta(days=round(max(at, -HORIZON_YEARS) * YEAR_DAYS))
 
-    asked = np.linspace(0.0, HORIZON_YEARS, 101)
+    shares = (np.arange(STEPS) + 0.5) / STEPS
+    curve = zip(ladder[(shares * len(ladder)).astype(int)], shares, strict=True)
     return Crossing(
         what=which[0],
         limit=which[1],
@@ -254,7 +257,7 @@ def _crossing(
         never=float(np.mean(np.isinf(ladder))),
         by=by,
         probability_by=None if by is None else float(np.mean(since <= years_between(last, by))),
-        curve=tuple((float(year), float(np.mean(since <= year))) for year in asked),
+        curve=tuple((float(year), float(share)) for year, share in curve if np.isfinite(year)),
         not_before=day(0.025),
     )
 

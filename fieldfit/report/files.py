@@ -10,6 +10,7 @@ import unicodedata
 from collections.abc import Mapping
 from pathlib import Path
 
+from fieldfit.decisions.plan import Plan
 from fieldfit.report.audit import audit_csv
 from fieldfit.report.finding import Finding
 from fieldfit.report.handover import Handover
@@ -152,6 +153,44 @@ def write_trend(finding: Finding, folder: Path) -> tuple[Path, ...]:
     folder = Path(folder)
     folder.mkdir(parents=True, exist_ok=True)
     return write_whole({folder / file: text for file, text in texts.items()})
+
+
+def write_plan(plan: Plan, folder: Path) -> tuple[Path, ...]:
+    """Write a plan: its report, the sheet to take along as page and PDF, the table to fill in, and the record.
+
+    Parameters
+    ----------
+    plan : Plan
+        What was planned.
+    folder : Path
+        Where to write; made when it is missing.
+
+    Returns
+    -------
+    tuple of Path
+        Report, sheet, sheet as PDF, table and record.
+
+    Raises
+    ------
+    OSError
+        When the folder cannot be written; no new file is left behind.
+    """
+    from fieldfit.report.plan_sheets import crew_sheet, crew_table, plan_record, plan_sheet
+    from fieldfit.report.sheet import sheet_html
+    from fieldfit.report.sheet_pdf import sheet_pdf
+
+    name, sheet = safe_name(plan.section.name), crew_sheet(plan)
+    folder = Path(folder)
+    folder.mkdir(parents=True, exist_ok=True)
+    return write_whole(
+        {
+            folder / f"{name}-plan.html": sheet_html(plan_sheet(plan)),
+            folder / f"{name}-test-sheet.html": sheet_html(sheet),
+            folder / f"{name}-test-sheet.pdf": sheet_pdf(sheet),
+            folder / f"{name}-readings.csv": crew_table(plan),
+            folder / f"{name}-plan.json": as_json(plan_record(plan)),
+        }
+    )
 
 
 def write_json(finding: Finding, path: Path) -> Path:
