@@ -35,6 +35,10 @@ class Channels:
     """Resolution of each of these columns [m³/s or Pa]; 0 when none can be seen."""
     temperature_degc: Array | None
     """(N,) liquid temperature [°C]; None when the file has no such column."""
+    barometer_pa: Array | None = None
+    """(N,) pressure of the air [Pa]; None when the file has no such column."""
+    absolute: frozenset[str] = frozenset()
+    """Columns whose pressures are absolute as they stand here, not yet over the air's."""
     reason: NDArray[np.str_]
     """(N,) why a row cannot be used already now; empty where it can."""
     assumed: tuple[str, ...] = ()

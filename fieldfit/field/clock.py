@@ -11,16 +11,20 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.clock_numbers import number_stamps
+from fieldfit.field.clock_texts import (
+    ADVICE,
+    ClockPlace,
+    is_time_of_day,
+    read_stamps,
+    read_times_of_day,
+    with_days,
+)
+from fieldfit.field.summer_time import straightened
 from fieldfit.field.units import shown
 
 if TYPE_CHECKING:
     from pandas import Series
-
-ADVICE = "Write year, month, day and time like 2026-05-12T08:00:00."
-
-_ZONE = re.compile(r".*(?:[zZ]|[0-9][+-][0-9]{2}:?[0-9]{2})")
-_TIME_OF_DAY = re.compile(r"[0-9]{1,2}:[0-9]{2}(?::[0-9]{2}(?:\.[0-9]+)?)?")
-_NO_DAY = "2000-01-01"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -34,12 +38,17 @@ class Clock:
 
 
 def read_clock(
-    times: Series[Any], dates: Series[Any] | None, line: NDArray[np.int64], place: tuple[str, str], said: list[str]
+    times: Series[Any],
+    dates: Series[Any] | None,
+    line: NDArray[np.int64],
+    place: ClockPlace | tuple[str, str],
+    said: list[str],
 ) -> Clock:
     """Read the times of a log.
 
-    ISO 8601 dates with times are understood, with or without T, fractions of a second and time zone; and times of day
-    on their own or beside a column of ISO dates.
+    ISO 8601 dates with times are understood, with or without T, fractions of a second and time zone; dates in other
+    writings; times of day on their own or beside a column of dates; Unix time and the days of spreadsheets. The hour of
+    a change to or from summer time is taken out.
 
     Parameters
     ----------
@@ -49,59 +58,58 @@ def read_clock(
         (N,) texts of a column of dates.
     line : ndarray
         (N,) line of each row.
-    place : tuple of str
-        File and heading, for errors.
+    place : ClockPlace
+        Where the clock stands.
     said : list of str
         Sentences on what was assumed are added here.
 
     Raises
     ------
     InputError
-        At the first time that cannot be read, or when only some have a time zone.
+        At the first time that cannot be read, when only some have a time zone, or when they may be read in two ways.
     """
-    file, heading = place
-    where = f"{file}, column '{shown(heading)}'"
+    if isinstance(place, tuple):
+        place = ClockPlace(file=place[0], heading=place[1])
     given = times.dropna()
     if given.empty:
-        raise InputError("no row has a time", "Check that the right column is named 'time'.", where)
+        raise InputError("no row has a time", "Check that the right column is named 'time'.", place.where)
     first = str(given.iloc[0]).strip()
-    if re.fullmatch(r"[0-9]*\.?[0-9]*", first):
-        raise InputError(
-            f"'{shown(first)}' may be seconds, minutes or days",
-            f"Name the unit in the heading, such as '{shown(heading)} [s]' for seconds from the start. Else: {ADVICE}",
-            f"{file}:{line[0]}, column '{shown(heading)}'",
-        )
-    day_known = not _TIME_OF_DAY.fullmatch(first) or dates is not None
-    if _TIME_OF_DAY.fullmatch(first):
-        days = dates.str.strip() if dates is not None else _NO_DAY
-        times = days + "T" + times.str.strip()
-        if dates is None:
-            said.append("The clock has no dates: all rows were taken to be of one day.")
-    stamps = _stamps(times, given, where, said)
+    if dates is not None:
+        times, dates_known = with_days(times, dates, said), True
+    else:
+        dates_known = not is_time_of_day(first) or place.known.day is not None
+    stamps, universal = _stamps(times, first, line, place, said)
     unread = np.flatnonzero(np.isnat(stamps) & times.notna().to_numpy())
     if unread.size:
         row = int(unread[0])
         seen = f"'{shown(str(times.iloc[row]))}' is not a date and time that can be read only one way"
-        raise InputError(seen, ADVICE, f"{file}:{line[row]}, column '{shown(heading)}'")
+        raise InputError(seen, ADVICE, f"{place.file}:{line[row]}, column '{shown(place.heading)}'")
+    there = stamps[~np.isnat(stamps)]
+    if there.size == 0:
+        raise InputError("no row has a day with its time", "Fill in the column of dates.", place.where)
+    if not universal and dates_known:
+        stamps = straightened(stamps, said)
+    if place.zone_s is not None and not universal:
+        stamps = stamps - np.timedelta64(round(place.zone_s), "s")
+        said.append("The zone in the heading of the clock was taken off: times are in UTC.")
     first_stamp = stamps[~np.isnat(stamps)][0]
-    start = first_stamp.astype("datetime64[us]").item() if day_known else None
+    start = first_stamp.astype("datetime64[us]").item() if dates_known else None
     return Clock(start=start, time_s=np.asarray((stamps - first_stamp) / np.timedelta64(1, "s")))
 
 
-def _stamps(times: Series[Any], given: Series[Any], where: str, said: list[str]) -> NDArray[np.datetime64]:
-    """Return times without zones as they stand, and times with zones in UTC; NaT where they cannot be read."""
-    import pandas as pd
+def _stamps(
+    times: Series[Any], first: str, line: NDArray[np.int64], place: ClockPlace, said: list[str]
+) -> tuple[NDArray[np.datetime64], bool]:
+    """Return the times as stamps, and whether they are in UTC."""
+    if re.fullmatch(r"[0-9]*[.,]?[0-9]*(?:[eE]\+?[0-9]+)?", first) and ":" not in str(times.dropna().iloc[0]):
+        import pandas as pd
 
-    # A look at some rows is enough: a logger that writes zones writes them all the way.
-    zoned = {bool(_ZONE.fullmatch(str(text).strip())) for text in given.iloc[:: max(1, len(given) // 200)]}
-    if len(zoned) > 1:
-        raise InputError("only some times have a time zone", "Write all times in one zone.", where)
-    if zoned == {True}:
-        said.append("Times with a zone were turned into UTC.")
-    stamps = pd.to_datetime(times, format="ISO8601", errors="coerce", utc=True)
-    if stamps.isna().sum() > times.isna().sum():
-        stamps = pd.to_datetime(times.str.strip(), format="ISO8601", errors="coerce", utc=True)
-    return np.asarray(stamps.dt.tz_localize(None).to_numpy())
+        numbers = pd.to_numeric(times.str.strip().str.replace(",", ".", regex=False), errors="coerce")
+        values = numbers.to_numpy(dtype=np.float64)
+        return number_stamps(values, (f"{place.file}:{line[0]}", place.heading), said), True
+    if is_time_of_day(first) and str(times.dropna().iloc[0]).strip() == first:
+        return read_times_of_day(times, place, place.known.day, said), False
+    return read_stamps(times, place, said)
 
 
 def count_from_start(values: NDArray[np.float64], seconds: float) -> Clock:

@@ -7,16 +7,21 @@ from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
 from fieldfit.errors import InputError
-from fieldfit.field.log_headings import Column, Headings, Wanted, find_temperature, resolve_unit, wanted_columns
-from fieldfit.field.log_rows import Form, decimal_mark, sample_rows, too_many_fields
+from fieldfit.field.clock_texts import is_iso
+from fieldfit.field.heading_parts import Wanted
+from fieldfit.field.log_columns import Column, find_barometer, find_temperature, resolve_column, say_unit
+from fieldfit.field.log_headings import Headings, wanted_columns
+from fieldfit.field.log_hints import LogHints
+from fieldfit.field.log_rows import Form, sample_rows, too_many_fields
 from fieldfit.field.log_source import LogSource
+from fieldfit.field.number_marks import decimal_mark
 from fieldfit.field.section import Section
 from fieldfit.field.time_column import TimeColumn, find_time
 from fieldfit.field.units import shown
 
 LONGEST_PREAMBLE = 200
 """Lines that may stand above the headings."""
-TAB = "\t"
+SEPARATOR_NAMES = {"\t": "tabs", ";": "semicolons", "|": "upright strokes"}
 _SAMPLE_ROWS = 50
 _LONGEST_LINE = 20_000
 
@@ -31,13 +36,20 @@ class Columns:
     """The liquid's temperature."""
     time: TimeColumn | None
     """The clock."""
+    barometer: Column | None = None
+    """The pressure of the air."""
 
     @property
     def of_numbers(self) -> tuple[int, ...]:
         """Places of the columns that hold numbers."""
-        others = [self.temperature] if self.temperature else []
+        others = [column for column in (self.temperature, self.barometer) if column]
         counted = [self.time.position] if self.time and self.time.unit else []
-        return (*(column.position for column in (*self.instruments.values(), *others)), *counted)
+        return tuple(dict.fromkeys([column.position for column in (*self.instruments.values(), *others)] + counted))
+
+    @property
+    def plain(self) -> bool:
+        """Whether every instrument's column holds readings that only need a factor: no count, raw signal or absolute pressure."""
+        return not any(one.counts or one.signal or one.unit.absolute for one in self.instruments.values())
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -48,6 +60,10 @@ class LogForm:
     """The columns that are used."""
     rows: Form
     """How its rows are written."""
+    above: tuple[str, ...] = ()
+    """Lines above the headings."""
+    blockwise: bool = True
+    """Whether a part of the rows says the same on its own: plain readings, and a clock in ISO 8601 or from the start."""
 
 
 def log_form(
@@ -78,9 +94,23 @@ def log_form(
         lines = _first_lines(source)
     except UnicodeError:
         raise source.undecodable() from None
-    headings = find(lines[:LONGEST_PREAMBLE], wanted_columns(section), source.path.name)
-    columns = _columns(headings, lines, said, source.path.name)
-    return LogForm(columns=columns, rows=_form(headings, columns, lines, source.path.name))
+    file = source.path.name
+    headings = find(lines[:LONGEST_PREAMBLE], wanted_columns(section), file)
+    columns = _columns(headings, section, lines, said, file)
+    rows = _form(headings, columns, lines, section.log_hints, file)
+    clocked = columns.time is not None and (columns.time.unit is not None or _is_iso(columns.time, lines, headings))
+    return LogForm(
+        columns=columns,
+        rows=rows,
+        above=tuple(lines[: headings.named_in - 1]),
+        blockwise=columns.plain and clocked and source.text is None and source.length is None,
+    )
+
+
+def _is_iso(time: TimeColumn, lines: Sequence[str], headings: Headings) -> bool:
+    """Return whether a clock shows dates and times in ISO 8601."""
+    shown_times = [row[time.position] for _, row in sample_rows(lines, headings) if time.position < len(row)]
+    return time.date_position is None and time.zone_s is None and all(map(is_iso, filter(None, shown_times)))
 
 
 def _first_lines(source: LogSource) -> list[str]:
@@ -95,26 +125,24 @@ def _first_lines(source: LogSource) -> list[str]:
     return lines
 
 
-def _columns(headings: Headings, lines: Sequence[str], said: list[str], file: str) -> Columns:
+def _columns(headings: Headings, section: Section, lines: Sequence[str], said: list[str], file: str) -> Columns:
     """Return the columns that are used, with their units."""
-    where = f"{file}:{headings.line}"
+    where = f"{file}:{headings.named_in}"
     below = sample_rows(lines, headings)
-    instruments = {
-        wanted.column: Column(
-            heading=headings.texts[place],
-            position=place,
-            unit=resolve_unit(wanted, headings.texts[place], its_unit, said, where),
-        )
-        for wanted, (place, its_unit) in zip(headings.wanted, headings.found, strict=True)
-    }
+    instruments = {}
+    for wanted, (place, its_unit) in zip(headings.wanted, headings.found, strict=True):
+        column = resolve_column(wanted, headings, place, its_unit, where)
+        say_unit(wanted, its_unit, column, said)
+        instruments[wanted.column] = column
     return Columns(
         instruments=instruments,
         temperature=find_temperature(headings, said, where),
         time=find_time(headings, below[0][1] if below else (), said, where),
+        barometer=find_barometer(headings, section.log_hints, said, where),
     )
 
 
-def _form(headings: Headings, columns: Columns, lines: Sequence[str], file: str) -> Form:
+def _form(headings: Headings, columns: Columns, lines: Sequence[str], hints: LogHints, file: str) -> Form:
     """Return how the rows are written, from a look at the first ones."""
     names = len(headings.texts)
     samples = sample_rows(lines, headings)
@@ -133,18 +161,21 @@ def _form(headings: Headings, columns: Columns, lines: Sequence[str], file: str)
     cells = [row[place] for _, row in samples for place in columns.of_numbers if place < len(row)]
     return Form(
         headings=headings,
-        decimal=decimal_mark(cells, headings.separator, file),
+        decimal=decimal_mark(cells, headings.separator, file, hints.decimal),
         width=max(names, widest),
         numbers=columns.of_numbers,
         label=columns.time.position if columns.time else 0,
+        decimal_stated=hints.decimal is not None,
     )
 
 
 def say_form(headings: Headings, decimal: str, said: list[str]) -> None:
     """Say how the file was read, where that is not plain."""
-    if headings.line > 1:
-        said.append(f"The headings were found in line {headings.line}; what stands above them was not read.")
+    if headings.named_in > 1:
+        said.append(f"The headings were found in line {headings.named_in}; what stands above them was not read.")
+    if headings.units:
+        said.append(f"Line {headings.line} was read as the units of the headings above it.")
     if headings.separator != ",":
-        said.append(f"Fields are parted by {'tabs' if headings.separator == TAB else 'semicolons'}.")
+        said.append(f"Fields are parted by {SEPARATOR_NAMES[headings.separator]}.")
     if decimal == ",":
         said.append("Commas in numbers are decimal marks.")

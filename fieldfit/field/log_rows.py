@@ -2,37 +2,35 @@
 
 from __future__ import annotations
 
+import io
 import re
 import warnings
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, TextIO
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
-from fieldfit.field.log_headings import Headings, fields
+from fieldfit.field.heading_parts import fields
+from fieldfit.field.log_headings import Headings
 from fieldfit.field.log_source import LogSource
+from fieldfit.field.number_marks import as_numbers, decimal_mark, no_number
+from fieldfit.field.row_kinds import MOST_SAID, as_missing, readings, without_comments
 from fieldfit.field.units import shown
 
 if TYPE_CHECKING:
     from pandas import DataFrame, Series
 
-MISSING_MARKS = ("", "nan", "na", "n/a", "#n/a", "-", "--", "---", "err", "error", "null", "none", "bad", "no data")
-"""What loggers write for a missing value, without capitals."""
-_MEANS = ("average", "avg", "mean", "median", "sum", "total", "count", "summary", "statistics")
-_ENDS = ("min", "minimum", "max", "maximum", "range", "std", "stdev", "std dev", "sd", "end", "end of file", "eof")
-SUMMARY_WORDS = (*_MEANS, *_ENDS)
-"""What stands at the beginning of a row that is no reading, without capitals."""
-
-MARKS_AS_WRITTEN = sorted(
-    {case(mark) for mark in MISSING_MARKS for case in (str, str.upper, str.capitalize)} | {"NaN"}
-)
+_BLANKS = ("", "nan", "na", "n/a", "n.a.", "-", "--", "---", "----", "*", "**", "***", "****", "*****", "null", "none")
+_FAULTS = ("err", "error", "bad", "no data", "fault", "fail", "over", "under", "ol", "ovl", "overrange", "underrange")
+_CELLS = ("#n/a", "#div/0!", "#value!", "#ref!", "#num!", "#name?", "#null!")
+MISSING_MARKS = (*_BLANKS, *_FAULTS, *_CELLS)
+"""What loggers and spreadsheets write for a missing value, without capitals."""
+MARKS_AS_WRITTEN = sorted({case(mark) for mark in MISSING_MARKS for case in (str, str.upper, str.capitalize)} | {"NaN"})
 """The same with the capitals they usually come in."""
-_NUMBER = r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
-_COMMA_NUMBER = re.compile(r"[+-]?[0-9]+,[0-9]+")
-_ANY_COMMA = re.compile(r"[+-]?[0-9.' ]*,[0-9.,]*")
+_WORD = re.compile(r"\s*[^\W\d_]{2}|\s*[*=]{2}")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -49,6 +47,8 @@ class Form:
     """Places of the columns that hold numbers."""
     label: int
     """Place of the column in which a summary row would say so."""
+    decimal_stated: bool = False
+    """Whether the section file states the decimal mark."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,7 +96,11 @@ def read_rows(source: LogSource, form: Form, said: list[str]) -> tuple[Rows, str
         table = _table_as_text(source, form)
         careful = True
     line = np.arange(1, len(table) + 1, dtype=np.int64) + form.headings.line
-    kept = _readings(table, line, form, said)
+    words: dict[int, str] = {}
+    if careful:
+        table, words = _with_missing(table, form)
+    kept = readings(table, line, form, said)
+    _say_words(words, line, kept, said)
     table, line = table[kept], line[kept]
     columns = {place: table[place] for place in form.numbers}
     if careful:
@@ -108,15 +112,16 @@ def read_rows(source: LogSource, form: Form, said: list[str]) -> tuple[Rows, str
     return Rows(line=line, numbers=numbers, texts=table.drop(columns=list(numbers))), form.decimal
 
 
-def _table(source: LogSource, form: Form, numbers_as: str) -> DataFrame:
+def _table(source: LogSource, form: Form, numbers_as: str, clean: bool = False) -> DataFrame:
     """Read the rows with the columns of numbers as one type, and everything else as text."""
     import pandas as pd
 
     kinds: dict[int, Any] = {place: numbers_as if place in form.numbers else "str" for place in range(form.width)}
-    with source.open() as file, warnings.catch_warnings():
+    with source.open() as opened, warnings.catch_warnings():
         warnings.simplefilter("error", pd.errors.ParserWarning)
         for _ in range(form.headings.line):
-            file.readline()
+            opened.readline()
+        file = _cleaned(opened, form) if clean else opened
         try:
             table: DataFrame = pd.read_csv(
                 file,
@@ -146,8 +151,48 @@ def _table_as_text(source: LogSource, form: Form) -> DataFrame:
         return _table(source, form, "str")
     except UnicodeDecodeError:
         raise source.undecodable() from None
+    except pd.errors.ParserError:
+        pass
+    try:
+        return _table(source, form, "str", clean=True)
     except pd.errors.ParserError as error:
         raise _uneven(str(error), form, source.path.name) from None
+
+
+def _cleaned(file: TextIO, form: Form) -> TextIO:
+    """Return the lines with comments and notes, which may hold any number of separators, shut in quotation marks."""
+    return io.StringIO(
+        "".join(line for line, _ in without_comments(file.readlines(), form.width, form.headings.separator)), newline=""
+    )
+
+
+def _with_missing(table: DataFrame, form: Form) -> tuple[DataFrame, dict[int, str]]:
+    """Return rows of texts with marks of missing values made missing, and the word of each row that has no number."""
+    places = [place for place in form.numbers if place != form.label] or list(form.numbers)
+    texts = {place: as_missing(table[place], MISSING_MARKS) for place in form.numbers}
+    wordy = np.array([texts[place].str.match(_WORD).fillna(False).to_numpy(dtype=bool) for place in places])
+    absent = np.array([texts[place].isna().to_numpy() for place in places])
+    without = np.all(wordy | absent, axis=0) & np.any(wordy, axis=0)
+    words = {}
+    for row in np.flatnonzero(without):
+        words[int(row)] = next(
+            str(texts[place].iloc[row]) for place in places if isinstance(texts[place].iloc[row], str)
+        )
+    for place in places:
+        texts[place] = texts[place].mask(without)
+    table = table.copy()
+    for place, column in texts.items():
+        table[place] = column
+    return table, words
+
+
+def _say_words(words: Mapping[int, str], line: NDArray[np.int64], kept: NDArray[np.bool_], said: list[str]) -> None:
+    """Say which rows have a word in place of numbers."""
+    rows = [row for row in words if kept[row]]
+    for row in rows[:MOST_SAID]:
+        said.append(f"Line {line[row]} has no numbers, only '{shown(words[row])}'; they were taken as missing.")
+    if len(rows) > MOST_SAID:
+        said.append(f"So were those of {len(rows) - MOST_SAID} more such lines.")
 
 
 def _uneven(reason: str, form: Form, file: str) -> InputError:
@@ -174,54 +219,13 @@ def too_many_fields(seen: int, headings: int, separator: str, where: str) -> Inp
     return InputError(f"{seen} fields stand under {headings} headings", advice, where)
 
 
-def _readings(table: DataFrame, line: NDArray[np.int64], form: Form, said: list[str]) -> NDArray[np.bool_]:
-    """Return which rows are readings: not blank, not a summary, not the headings over again."""
-    kept: NDArray[np.bool_] = ~np.all(table.isna().to_numpy(), axis=1)
-    column = table[form.label]
-    if column.dtype.kind == "f":
-        return kept
-    # Looking at first letters spares a long log the work on every text.
-    lettered = np.flatnonzero(column.fillna("").to_numpy(dtype=object).astype("U1") >= "A")
-    labels = column.iloc[lettered].str.strip().str.rstrip(":").str.casefold()
-    words = (*SUMMARY_WORDS, form.headings.texts[form.label].casefold())
-    for number, row in enumerate(lettered[labels.isin(words).to_numpy(dtype=bool) & kept[lettered]]):
-        kept[row] = False
-        if number < 5:
-            said.append(
-                f"Line {line[row]} ('{shown(str(table[form.label].iloc[row]))}') is no reading and was left out."
-            )
-        elif number == 5:
-            said.append("More such lines were left out.")
-    return kept
-
-
 def _careful_numbers(column: Series[Any], line: NDArray[np.int64], form: Form, source: LogSource) -> Series[Any]:
     """Turn texts into numbers one rule at a time, so that the first bad field can be named."""
-    texts = column.str.strip()
-    texts = texts.mask(texts.str.casefold().isin(MISSING_MARKS))
-    if form.decimal == ",":
-        texts = texts.str.replace(",", ".", regex=False)
-    bad = texts.notna() & ~texts.str.fullmatch(_NUMBER).fillna(True).astype(bool)
-    if bad.any():
-        row = int(np.flatnonzero(bad.to_numpy())[0])
-        place = f"{source.path.name}:{line[row]}, column '{shown(form.headings.texts[int(str(column.name))])}'"
-        raise _no_number(str(column.iloc[row]), form, place)
-    return texts.astype("float64")
-
-
-def _no_number(text: str, form: Form, where: str) -> InputError:
-    """Return the error for a field that should be a number."""
-    if _ANY_COMMA.fullmatch(text.strip()):
-        return InputError(
-            f"'{shown(text)}' has a comma in its number",
-            "Export the log with semicolons between fields and decimal commas throughout, or with decimal points and "
-            "no thousands separators.",
-            where,
-        )
-    marks = ", ".join(f"'{mark}'" for mark in ("NaN", "NA", "--", "ERR", "Bad"))
-    return InputError(
-        f"'{shown(text)}' is not a number", f"Leave a missing value empty, or write one of {marks}.", where
-    )
+    numbers, bad = as_numbers(column, form.decimal)
+    if bad is not None:
+        place = f"{source.path.name}:{line[bad]}, column '{shown(form.headings.texts[int(str(column.name))])}'"
+        raise no_number(str(column.iloc[bad]), place, ("NaN", "NA", "--", "ERR", "Bad"))
+    return numbers
 
 
 def _check_finite(values: NDArray[np.float64], line: NDArray[np.int64], column: str, source: LogSource) -> None:
@@ -234,45 +238,18 @@ def _check_finite(values: NDArray[np.float64], line: NDArray[np.int64], column: 
 
 def _mark_throughout(columns: Mapping[int, Series[Any]], form: Form, file: str) -> str:
     """Return the decimal mark that every row is written with."""
+    if form.decimal_stated:
+        return form.decimal
     marked = [column[column.str.contains(r"[.,]", regex=True, na=False)] for column in columns.values()]
     return decimal_mark([str(cell) for column in marked for cell in column], form.headings.separator, file)
 
 
-def decimal_mark(cells: Sequence[str], separator: str, file: str) -> str:
-    """Return the decimal mark that numbers are written with.
-
-    Parameters
-    ----------
-    cells : sequence of str
-        Fields of the columns of numbers.
-    separator : str
-        What stands between fields; where it is a comma, points are the only decimal marks.
-    file : str
-        Name of the log, for errors.
-
-    Raises
-    ------
-    InputError
-        When commas and points both stand in numbers, or commas may part thousands.
-
-    Examples
-    --------
-    >>> decimal_mark(["412,1", "400"], ";", "log.csv")
-    ','
-    """
-    commas = [cell for cell in cells if _COMMA_NUMBER.fullmatch(cell.strip())]
-    if not commas or separator == ",":
-        return "."
-    points = [cell for cell in cells if re.fullmatch(r"[+-]?[0-9]*\.[0-9]+", cell.strip())]
-    thousands = separator == "\t" and all(len(cell.partition(",")[2]) == 3 for cell in commas)
-    if points or thousands:
-        example = f"'{shown(commas[0])}'" + (f" and '{shown(points[0])}'" if points else "")
-        advice = "Export the log with one decimal mark throughout and no thousands separators."
-        raise InputError(f"it is not clear which mark is the decimal one in {example}", advice, file)
-    return ","
-
-
 def sample_rows(lines: Sequence[str], headings: Headings) -> list[tuple[int, tuple[str, ...]]]:
-    """Return line and fields of the rows below the headings that are not blank, among a log's first lines."""
-    below = enumerate(lines[headings.line :], start=headings.line + 1)
-    return [(number, fields(line, headings.separator)) for number, line in below if line.strip()]
+    """Return line and fields of the rows below the headings, among a log's first lines.
+
+    Blank lines, comments and notes of another width are left out.
+    """
+    separator = headings.separator
+    below = without_comments(lines[headings.line :], len(headings.texts), separator)
+    numbered = enumerate(below, start=headings.line + 1)
+    return [(number, fields(line, separator)) for number, (line, _) in numbered if line.strip()]

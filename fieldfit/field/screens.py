@@ -115,6 +115,8 @@ LIMITS = {
 
 MISSING = "missing value"
 CLOCK = "clock repeated or backwards"
+SIGNAL = "signal fault"
+CUT_OFF = "line cut off"
 STUCK = "stuck gauge"
 UNPAIRED = "no reading of another logger"
 RANGE = "out of range"
@@ -145,6 +147,8 @@ class Screen:
 SCREENS: tuple[Screen, ...] = (
     Screen(reason=MISSING, judges="row", limits=(), asks="A value that is needed is not there."),
     Screen(reason=CLOCK, judges="row", limits=(), asks="The clock repeats itself or runs backwards."),
+    Screen(reason=SIGNAL, judges="row", limits=(), asks="The raw signal of a transmitter says that it has failed."),
+    Screen(reason=CUT_OFF, judges="row", limits=(), asks="The logger stopped in the middle of writing the line."),
     Screen(reason=UNPAIRED, judges="row", limits=(), asks="Another logger had not begun, or had ended."),
     Screen(reason=RANGE, judges="row", limits=(), asks="A gauge reads beyond its range, or less than a vacuum."),
     Screen(

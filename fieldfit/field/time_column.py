@@ -7,17 +7,45 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from fieldfit.errors import InputError
+from fieldfit.field.clock_texts import is_day_only
+from fieldfit.field.date_forms import is_stamp
+from fieldfit.field.heading_parts import bare_unit
 from fieldfit.field.log_headings import Headings
+from fieldfit.field.log_hints import DateOrder
 from fieldfit.field.units import Unit, is_unit, shown, unit
 
-TIME_NAMES = ("time", "timestamp", "time stamp", "datetime", "date time", "date/time", "date and time", "clock")
+TIME_NAMES = (
+    *("time", "timestamp", "time stamp", "datetime", "date time", "date/time", "date and time", "date & time", "clock"),
+    *(
+        "local time",
+        "time of day",
+        "log time",
+        "sample time",
+        "unix time",
+        "epoch",
+        "unix timestamp",
+        "uhrzeit",
+        "zeit",
+    ),
+    *("zeitstempel", "heure", "hora", "fecha y hora", "datum/uhrzeit", "datum zeit"),
+)
 """Headings of a clock."""
-ELAPSED_NAMES = ("elapsed time", "elapsed")
+ELAPSED_NAMES = ("elapsed time", "elapsed", "run time", "test time", "t")
 """Headings of a clock that counts from the start."""
+DATE_NAMES = ("date", "day", "log date", "sample date", "datum", "fecha")
+"""Headings of days."""
+COUNTED_NAMES = {
+    name + rest: its_unit
+    for its_unit, names in {"s": ("seconds", "sec", "secs"), "min": ("minutes",), "h": ("hours",)}.items()
+    for name in (*names, *(f"elapsed {each}" for each in names))
+    for rest in ("", " from start", " since start", " elapsed")
+}
+"""Headings that name the unit of a clock that counts from the start."""
 
 _WITH_UNIT = re.compile(r"(.+?)\s*[\[(,_]\s*([^\])]+?)\s*[\])]?")
-_DAY = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}")
-_DAY_AND_TIME = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}[T ][0-9]{1,2}:[0-9]{2}.*")
+_DAY_FIRST = re.compile(r"(?i)\bd{1,2}[./ -]m{1,3}[./ -]y")
+_MONTH_FIRST = re.compile(r"(?i)\bm{1,2}[./ -]d{1,2}[./ -]y")
+_ZONE = re.compile(r"(?i)\b(?:utc|gmt)\s*(?:([+-])\s*([0-9]{1,2})(?::?([0-9]{2}))?)?(?![a-z0-9])")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -32,6 +60,10 @@ class TimeColumn:
     """Unit of a clock that counts from the start; None for dates and times."""
     date_position: int | None = None
     """Place of a column of dates, where the clock has times of day only."""
+    order: DateOrder | None = None
+    """Order of day and month, as the headings show it."""
+    zone_s: float | None = None
+    """Time by which the zone in the heading is ahead of UTC [s]; None where it has none."""
 
 
 def find_time(headings: Headings, first_row: Sequence[str], said: list[str], where: str) -> TimeColumn | None:
@@ -53,42 +85,82 @@ def find_time(headings: Headings, first_row: Sequence[str], said: list[str], whe
     InputError
         When two columns may be the clock.
     """
-    names = [_name_and_unit(text) for text in headings.texts]
-    dates = [place for place, (name, _) in enumerate(names) if name == "date"]
-    for wanted in (*TIME_NAMES, *ELAPSED_NAMES):
+    taken = {place for place, _ in headings.found}
+    texts = ["" if place in taken else headings.with_unit(place) for place in range(len(headings.texts))]
+    names = [_name_and_unit(text) for text in texts]
+    dates = [place for place, (name, _) in enumerate(names) if name in DATE_NAMES]
+    for wanted in (*TIME_NAMES, *ELAPSED_NAMES, *COUNTED_NAMES):
         places = [place for place, (name, _) in enumerate(names) if name == wanted]
-        if places:
+        counts = all(names[place][1] for place in places)
+        if places and (counts or wanted not in COUNTED_NAMES or _is_number(first_row, places[0])):
             return _clock_at(_only(places, headings, where), headings, first_row, dates)
-    stamped = [place for place, field in enumerate(first_row[: len(names)]) if _DAY_AND_TIME.fullmatch(field)]
+    open_ones = range(len(texts))
+    stamped = [place for place, field in enumerate(first_row[: len(names)]) if place in open_ones and is_stamp(field)]
+    stamped = [place for place in stamped if place not in taken]
     if not stamped:
         return None
     place = _only(stamped, headings, where)
     if place not in dates:
         said.append(f"The column '{shown(headings.texts[place])}' was taken as the clock.")
-    return TimeColumn(heading=headings.texts[place], position=place)
+    return _column(place, headings, None, None)
+
+
+def _is_number(row: Sequence[str], place: int) -> bool:
+    """Return whether a field is a number."""
+    return place < len(row) and re.fullmatch(r"[0-9]*[.,]?[0-9]+", row[place]) is not None
 
 
 def _clock_at(place: int, headings: Headings, first_row: Sequence[str], dates: list[int]) -> TimeColumn | None:
     """Return the clock in a column that is called so; None where it holds days only."""
-    text, its_unit = headings.texts[place], _name_and_unit(headings.texts[place])[1]
+    name, its_unit = _name_and_unit(headings.with_unit(place))
+    if its_unit is None and name in COUNTED_NAMES:
+        its_unit = unit(COUNTED_NAMES[name], "duration")
     field = first_row[place] if place < len(first_row) else ""
-    if _DAY.fullmatch(field):
+    if is_day_only(field):
         return None
-    beside = dates[0] if dates and not _DAY_AND_TIME.fullmatch(field) else None
-    return TimeColumn(heading=text, position=place, unit=its_unit, date_position=None if its_unit else beside)
+    beside = dates[0] if dates and not is_stamp(field) and not its_unit else None
+    return _column(place, headings, its_unit, beside)
+
+
+def _column(place: int, headings: Headings, its_unit: Unit | None, date_position: int | None) -> TimeColumn:
+    """Return a clock with what its headings show of order and zone."""
+    text = headings.with_unit(place)
+    days = headings.with_unit(date_position) if date_position is not None else text
+    order: DateOrder | None = "day first" if _DAY_FIRST.search(days) else None
+    if _MONTH_FIRST.search(days):
+        order = "month first"
+    return TimeColumn(
+        heading=headings.texts[place] if its_unit else text,
+        position=place,
+        unit=its_unit,
+        date_position=date_position,
+        order=order,
+        zone_s=_zone(text),
+    )
+
+
+def _zone(heading: str) -> float | None:
+    """Return by how much the zone in a heading is ahead of UTC [s]."""
+    found = _ZONE.search(heading)
+    if found is None:
+        return None
+    minutes = 60 * int(found[2] or 0) + int(found[3] or 0)
+    return 60.0 * (-minutes if found[1] == "-" else minutes)
 
 
 def _name_and_unit(heading: str) -> tuple[str, Unit | None]:
     """Return a heading without capitals and underscores, parted from a unit of time if it has one."""
     parted = _WITH_UNIT.fullmatch(heading)
-    if parted and is_unit(parted[2], "duration"):
-        return _fold(parted[1]), unit(parted[2], "duration")
+    if parted and is_unit(bare_unit(parted[2]), "duration"):
+        return _fold(parted[1]), unit(bare_unit(parted[2]), "duration")
     return _fold(heading), None
 
 
 def _fold(text: str) -> str:
-    """Return a name without capitals, underscores, and what stands in brackets behind it."""
-    return " ".join(re.sub(r"[\[(][^\])]*[\])]$", "", text).replace("_", " ").casefold().split())
+    """Return a name without capitals, underscores, and what stands in brackets or behind a comma."""
+    bare = re.sub(r"\s*(?:[\[(][^\])]*[\])]|,.*)$", "", text)
+    bare = re.sub(r"(?i)[ _](?:utc|gmt|local)$", "", bare)
+    return " ".join(bare.replace("_", " ").casefold().split())
 
 
 def _only(places: list[int], headings: Headings, where: str) -> int:
