@@ -8,6 +8,7 @@ from pathlib import Path
 import numpy as np
 
 from fieldfit.assessment import logs_to_read, of_no_reach, read_campaign
+from fieldfit.field.campaign_files import gather_parts
 from fieldfit.field.plateaus import set_plateaus_aside
 from fieldfit.field.quantisation import channel_steps
 from fieldfit.field.reach_pipe import section_of_reach
@@ -45,7 +46,8 @@ def screen_logs(section: str | Path | Section, *logs: str | Path) -> ScreenFindi
         When a file cannot be used; the message says where and what to do.
     """
     known = section if isinstance(section, Section) else read_section(Path(section))
-    campaigns = [_campaign(known, path, date) for path, date in logs_to_read(known, logs)]
+    joined, paths = gather_parts(known, logs)
+    campaigns = [_campaign(joined, path, date) for path, date in logs_to_read(joined, paths)]
     return ScreenFinding(section=known, campaigns=tuple(campaigns))
 
 

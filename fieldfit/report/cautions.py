@@ -158,6 +158,12 @@ def _of_log(section: Section, log: Log, screening: Screening, plateaus: Plateaus
             text="No stretch of the log is steady over enough rows, and the rows are few and far apart: each was taken as a "
             "reading of its own, as on a hand sheet.",
         )
+    if screening.block is not None:
+        yield Caution(
+            about="log",
+            text="The flow seldom stands still, so the log was read as ordinary service: rows in blocks of time, blocks of like "
+            'flow in groups. Write mode = "plateaus" in the [screen] table to read it as a test in steps.',
+        )
     if section.meter.senses == "velocity":
         yield Caution(
             about="meter",

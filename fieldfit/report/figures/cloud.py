@@ -57,8 +57,8 @@ def cloud(campaign: CampaignScreen, reach: int, section: Section) -> Figure:
     matplotlib.figure.Figure
         The figure; many rows are thinned, and rows beyond the frame are marked at its edge.
     """
-    figure = style.blank(88.0)
-    ax = style.axes(figure, 12.0, 11.0, 40.0, 8.0)
+    figure = style.blank(78.0)
+    ax = style.axes(figure, 12.0, 11.0, 46.0, 8.0)
     flow, head = campaign.log.flow_m3_s * 1e3, row_heads(campaign, reach, section)
     known = np.isfinite(flow) & np.isfinite(head)
     sound = known & np.isin(campaign.screening.reason, ("", "unsteady"))
@@ -95,7 +95,7 @@ def _aside(
         # Beyond the frame a row is drawn at its edge, so that none is lost.
         _dots(ax, np.clip(flow[here], left, right), np.clip(head[here], low, high), mark, 3.2)
         unseen = count - np.count_nonzero(here)
-        hidden = f" ({unseen} not drawn)" if unseen else ""
+        hidden = "" if not unseen else ", unseen" if unseen == count else f", {unseen} unseen"
         labels.append((f"{count} {reason}{hidden}", mark))
     return labels
 
@@ -144,7 +144,7 @@ def _key(ax: Axes, entries: list[tuple[str, tuple[str, str]]], campaign: Campaig
     ]
     all_entries = [*rings, *((text, (*mark, mark[1])) for text, mark in entries)]
     for index, (text, (mark, colour, face)) in enumerate(all_entries):
-        place = 0.97 - 0.064 * index
+        place = 0.97 - 0.074 * index
         ax.plot(
             [1.03],
             [place],
@@ -156,5 +156,5 @@ def _key(ax: Axes, entries: list[tuple[str, tuple[str, str]]], campaign: Campaig
             clip_on=False,
         )
         style.write(
-            ax, (1.055, place), style.shorten(text, 30), style.INK, transform=ax.transAxes, va="center", fontsize=7.0
+            ax, (1.055, place), style.shorten(text, 31), style.INK, transform=ax.transAxes, va="center", fontsize=7.0
         )

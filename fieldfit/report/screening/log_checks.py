@@ -33,6 +33,9 @@ FAULTS = {
 }
 """What to do about each kind of fault."""
 LONGER = "Hold each flow longer."
+HARDLY = 1e-4
+"""Share of the smallest head loss that the steps leave under which they hardly count."""
+TREMBLING = "The readings tremble over their steps, so a mean lies between them."
 STEP = 0.02
 """Share of the smallest head loss that the steps of the columns may leave uncertain."""
 
@@ -120,6 +123,7 @@ def _resolution(reaches: tuple[ReachScreen, ...], steps: tuple[ChannelSteps, ...
             if smallest > 0.0 and left / smallest > worst:
                 worst = left / smallest
                 told = f"The gauges' steps leave ±{significant(1.96 * left, 2)} m in a smallest loss of {significant(smallest)} m."
+    told = TREMBLING if worst < HARDLY else told
     if worst >= 0.0:
         yield Check(
             what="Steps of the gauges over the smallest head loss",

@@ -75,6 +75,7 @@ def _campaign(finding: ScreenFinding, index: int, drawings: dict[str, Figure]) -
         "reading": f"{words.extent(campaign)}. {words.reading(campaign, section)}",
         "timeline": {"name": f"c{index}", "title": "The log itself", "text": captions.rows(campaign)},
         "reaches": [_reach(finding, (index, k), drawings) for k in range(len(campaign.reaches))],
+        "clocks": words.clocks(campaign),
         "checks": tables.checks(campaign.checks),
         "rows": report_tables.rows(campaign),
         "screens": tables.screens(campaign, section),

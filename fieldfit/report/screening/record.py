@@ -33,6 +33,8 @@ def screen_record(finding: ScreenFinding) -> Record:
       static), ``checks``;
     - ``checks``: ``what``, ``value``, ``limit``, ``unit``, ``passed``, ``needed``, ``because``, ``do``; those of a reach
       stand with it, those of the log as a whole with the campaign;
+    - ``clocks``, one for each logger of several: ``file``, ``columns``, ``how`` its offset is known, ``offset_s`` ahead,
+      ``interval_s`` (95 %), ``drift`` (s/s);
     - ``assumed``: sentences.
 
     A value that is not defined is null.
@@ -70,7 +72,7 @@ def _campaign(campaign: CampaignScreen) -> Record:
             "file": log.file,
             "sha256": log.sha256,
             "kind": log.kind,
-            "rows": int(log.line.size),
+            "rows": log.rows,
             "used": campaign.screening.used,
             "set_aside": {reason: int(number) for reason, number in campaign.screening.counts},
         },
@@ -100,6 +102,17 @@ def _campaign(campaign: CampaignScreen) -> Record:
         ],
         "reaches": [_reach(reach) for reach in campaign.reaches],
         "checks": [_check(check) for check in campaign.checks],
+        "clocks": [
+            {
+                "file": one.file,
+                "columns": list(one.columns),
+                "how": one.how,
+                "offset_s": _number(one.offset_s),
+                "interval_s": None if one.interval_s is None else [_number(end) for end in one.interval_s],
+                "drift": _number(one.drift),
+            }
+            for one in log.clocks
+        ],
         "assumed": list(log.assumed),
     }
 

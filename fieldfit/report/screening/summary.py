@@ -41,8 +41,10 @@ def _campaign(campaign: CampaignScreen, finding: ScreenFinding) -> list[str]:
         if len(campaign.reaches) > 1:
             lines += folded("reach", f"{reach.upstream.column} to {reach.downstream.column}")
         lines += _reach(reach)
+    for number, text in enumerate(words.clocks(campaign)):
+        lines += folded("clocks" if number == 0 else "", text)
     lines += folded("steps", _steps(campaign))
-    total = campaign.log.line.size
+    total = campaign.log.rows
     aside = ", ".join(f"{number} {reason}" for reason, number in campaign.screening.counts)
     lines += folded("rows", f"{campaign.screening.used} of {total} used" + (f"; set aside: {aside}" if aside else ""))
     for name, needed in (("missing", True), ("weak", False)):

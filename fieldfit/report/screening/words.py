@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import numpy as np
 
+from fieldfit.field.clock_words import say_clock
 from fieldfit.field.section import Section
 from fieldfit.field.service_log import block_seconds
-from fieldfit.report.digits import fixed, litres, significant
+from fieldfit.report.digits import fixed, significant
 from fieldfit.report.screening.finding import CampaignScreen, Check
 
 MINUTE_S, HOUR_S, DAY_S = 60.0, 3600.0, 86_400.0
@@ -65,7 +66,7 @@ def reading(campaign: CampaignScreen, section: Section) -> str:
 def extent(campaign: CampaignScreen) -> str:
     """Return how long the log is and how far apart its rows are."""
     log = campaign.log
-    rows = f"{fixed(log.line.size, 0)} rows"
+    rows = f"{fixed(log.rows, 0)} rows"
     told = log.time_s[np.isfinite(log.time_s)]
     steps = np.diff(told)
     if log.kind == "sheet" or not np.any(steps > 0.0):
@@ -74,13 +75,12 @@ def extent(campaign: CampaignScreen) -> str:
     return f"{rows}, {apart} apart, over {duration(float(np.max(told) - np.min(told)))}"
 
 
-def flows(campaign: CampaignScreen) -> str:
-    """Return the range of steady flows."""
-    flow = campaign.plateaus.flow_m3_s[~campaign.plateaus.static]
-    if not flow.size:
-        return "no steady flow"
-    ends = f"{litres(float(flow.min()))} to {litres(float(flow.max()))}" if flow.size > 1 else litres(float(flow[0]))
-    return f"{flow.size} at {ends}"
+def clocks(campaign: CampaignScreen) -> list[str]:
+    """Return what was found of the loggers' clocks, as sentences; none for a log of one logger."""
+    every = campaign.log.clocks
+    reference = [one for one in every if one.how == "reference"]
+    told = [f"All times are those of {one.file} ({', '.join(one.columns)})." for one in reference]
+    return told + [say_clock(one, every) for one in every if one.how != "reference"]
 
 
 def duration(seconds: float) -> str:
