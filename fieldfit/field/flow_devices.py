@@ -198,8 +198,8 @@ def constriction_flow(difference_pa: Array, throat: Throat, density_kg_m3: float
     seen = size > max(blind, 1e-3)
     if not np.any(seen):
         return np.where(np.isnan(difference_pa), np.nan, 0.0)
-    ends = np.log([float(np.min(size[seen])), float(np.max(size[seen])) * (1.0 + 1e-9)])
-    ladder = np.exp(np.linspace(*ends, TABLE_POINTS))
+    least, most = float(np.min(size[seen])), float(np.max(size[seen])) * (1.0 + 1e-9)
+    ladder = np.geomspace(least, most, TABLE_POINTS)
     coefficient = np.array([_discharge_coefficient(one, throat, density_kg_m3, viscosity_pa_s) for one in ladder])
     read = np.interp(np.log(np.where(seen, size, ladder[0])), np.log(ladder), coefficient)
     flow = read * _ideal_flow(size, throat, density_kg_m3)

@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.lag_interval import LagInterval, covariance, lag_interval
-from fieldfit.field.lag_search import rough_lags
+from fieldfit.field.lag_search import dearer, rough_lags
 from fieldfit.field.signals import Clocks, Grid, Signals
 
 Array = NDArray[np.float64]
@@ -260,7 +260,9 @@ def _judged(signals: Signals, interval: LagInterval, search: tuple[Array, Array]
 def _rival(signals: Signals, fit: _Fit, place: int, search: tuple[tuple[Array, Array], float]) -> float | None:
     """Return a lag out of the best one's valley that fits as well; None where there is none."""
     (lags, share), rows = search
-    rise = float(np.exp(AMBIGUOUS / max(rows, 4.0)))
+    rows = max(rows, 4.0)
+    # Another lag lays other rows over one another, and a variance of so many rows is itself not sure.
+    rise = float(np.exp(AMBIGUOUS / rows + 2.0 * np.sqrt(2.0 / rows)))
     allowed = rise * signals.unexplained(fit.clocks, fit.grid)
     for lag in _valleys(lags, share, fit.clocks.lag_s[place])[:RIVALS]:
         if _closely(signals, fit, place, lag) <= allowed:
@@ -269,7 +271,7 @@ def _rival(signals: Signals, fit: _Fit, place: int, search: tuple[tuple[Array, A
 
 
 def _closely(signals: Signals, fit: _Fit, place: int, lag: float) -> float:
-    """Return the share of variance left over at the best lag near one of the rough search."""
+    """Return the share of variance left over at the best lag near one of the rough search, held against the overlap."""
     alone = _Free([place], False)
     theta = np.array([lag])
     at = alone.clocks(fit.clocks, theta)
@@ -282,7 +284,8 @@ def _closely(signals: Signals, fit: _Fit, place: int, lag: float) -> float:
 
     for _ in range(2):
         theta = _look_around(residual, theta, 0, grid.width_s)
-    return signals.unexplained(alone.clocks(at, theta), grid)
+    common = float(np.count_nonzero(grid.keep)) / max(float(np.count_nonzero(fit.grid.keep)), 1.0)
+    return signals.unexplained(alone.clocks(at, theta), grid) * dearer(common)
 
 
 def _valleys(lags: Array, share: Array, best: float) -> list[float]:

@@ -18,6 +18,8 @@ COMMON_SHARE = 0.5
 """Share of the shorter log that must overlap."""
 FEWEST = 12
 """Pieces that must overlap."""
+ENOUGH = 0.75
+"""Share of the shorter log from which more overlap speaks no more for a lag."""
 UNEXPLAINED = 0.7
 """Share of the variance left over at the best lag from which the channels have nothing to do with one another."""
 
@@ -74,6 +76,20 @@ def rough_lags(signals: Signals, known: Sequence[float | None]) -> Search:
     return Search(seconds=tuple(one or 0.0 for one in seconds), refused=tuple(refused), curves=tuple(curves))
 
 
+def dearer(share: float) -> float:
+    """Return the factor on what a lag leaves over when only a share of the log overlaps.
+
+    To leave part of a log without partner is a poor way of fitting it: staircases shifted by several steps fit one
+    another where they still meet.
+
+    Examples
+    --------
+    >>> dearer(0.9), round(dearer(0.5), 2)
+    (1.0, 5.06)
+    """
+    return min(1.0, share / ENOUGH) ** -4
+
+
 def _why_not(best: float) -> str:
     """Return why a logger was not found."""
     if not np.isfinite(best):
@@ -117,8 +133,9 @@ def _curve(
     curves: dict[int, float] = {}
     for relation in relations:
         own = [place for place in relation if signals.loggers[place] == logger]
-        for shift in _shifts(placed, relation, own, step):
-            left = _left_over(placed, relation, (own, shift), step)
+        shares = _overlap_shares(placed, relation, own, step)
+        for shift in shares:
+            left = _left_over(placed, relation, (own, shift), step) * dearer(shares[shift])
             if np.isfinite(left):
                 curves[shift] = min(curves.get(shift, np.inf), left)
     lags = np.array(sorted(curves), dtype=np.int64)
@@ -142,15 +159,21 @@ def _relations(signals: Signals, settled: list[bool], logger: int) -> list[tuple
     return [(other, one) if other < one else (one, other) for one in own for other in others]
 
 
-def _shifts(placed: list[tuple[float, Array]], relation: tuple[int, ...], own: list[int], step: float) -> range:
-    """Return the shifts in pieces at which the logger overlaps the others enough."""
+def _overlap_shares(
+    placed: list[tuple[float, Array]], relation: tuple[int, ...], own: list[int], step: float
+) -> dict[int, float]:
+    """Return the shifts in pieces at which the logger overlaps the others enough, with the share that it does."""
     rest = [place for place in relation if place not in own]
     if not rest:
-        return range(0)
+        return {}
     mine, theirs = _common(placed, own, step), _common(placed, rest, step)
     shortest = min(mine[1] - mine[0], theirs[1] - theirs[0])
     need = max(COMMON_SHARE * shortest, FEWEST)
-    return range(int(np.floor(mine[0] - theirs[1] + need)), int(np.ceil(mine[1] - theirs[0] - need)) + 1)
+    first, last = int(np.floor(mine[0] - theirs[1] + need)), int(np.ceil(mine[1] - theirs[0] - need))
+    overlap = {
+        shift: min(mine[1] - shift, theirs[1]) - max(mine[0] - shift, theirs[0]) for shift in range(first, last + 1)
+    }
+    return {shift: common / shortest for shift, common in overlap.items() if common > 0}
 
 
 def _common(placed: list[tuple[float, Array]], which: list[int], step: float) -> tuple[int, int]:
