@@ -1,16 +1,17 @@
-"""What may explain a set of readings, and how likely each was before anyone looked: every prior in one table."""
+"""What may explain a set of readings, each cause as trials of the fault model under its prior."""
 
 from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Literal, NamedTuple
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.readings import ReachReadings
 from fieldfit.inference import wrong_units
+from fieldfit.inference.beliefs import AFTER_STATIC, BELIEFS, BRANCH_SHARE, NOTHING
 from fieldfit.inference.fault_model import (
     AIR,
     BORE,
@@ -28,17 +29,6 @@ from fieldfit.inference.fault_model import (
 )
 
 Array = NDArray[np.float64]
-Cause = Literal[
-    "rough wall",
-    "reduced bore",
-    "local loss",
-    "gauge offset",
-    "leak or open branch",
-    "trapped air",
-    "meter error",
-    "wrong unit or swapped channel",
-]
-
 NORMAL_95 = 1.959963984540054
 GENERIC_NEW_M = (1.5e-6, 5e-4)
 """Roughness of new pipe of whatever material: drawn plastic to sound cast iron and concrete [m]."""
@@ -50,72 +40,6 @@ PLACES = (0.0, 0.25, 0.5, 0.75)
 """Places of a leak that are tried, as shares of the length from the meter's end [-]."""
 RIPPLE = 0.6
 """Width over spacing of the normal parts that a log-uniform prior is made of: it ripples by 0.2 % [-]."""
-
-
-class Belief(NamedTuple):
-    """One line of the table of priors."""
-
-    probability: float
-    """Prior probability of the cause [-]."""
-    size: str
-    """Prior of its size, in words."""
-    because: str
-    """Why that prior."""
-
-
-BELIEFS: dict[str, Belief] = {
-    "nothing unusual": Belief(
-        0.34,
-        "the wall within new pipe's range, or up to twice its roughest",
-        "most sections tested are sound; without a material the range is that of all new pipe",
-    ),
-    "rough wall": Belief(
-        0.26,
-        "roughness log-uniform from there to 0.05 of the bore",
-        "roughening is what ages most pipes; beyond 0.05 of the bore it is not a roughness",
-    ),
-    "reduced bore": Belief(
-        0.10,
-        "bore less by 0.5 to 37 %, log-uniform (area down to 40 %); wall as new",
-        "scale and deposits; a pipe choked further is known before it is tested",
-    ),
-    "local loss": Belief(
-        0.10,
-        "K log-uniform from 0.5 to 500; wall as new",
-        "a valve not fully open: half shut has K about 3 to 30, nearly shut some hundred",
-    ),
-    "gauge offset": Belief(
-        0.05,
-        "normal, 3 or 10 times what is stated of gauges and survey, or of the levelling where there is a static",
-        "knocked gauges and wrong elevations go far beyond limits; after a static it is a fifth as likely",
-    ),
-    "leak or open branch": Belief(
-        0.05,
-        "a steady flow log-uniform from 0.5 to 50 % of the largest metered, anywhere; or a like share of the flow",
-        "a service or a valve left open between meter and section end, or a parallel main",
-    ),
-    "trapped air": Belief(
-        0.03,
-        "head step log-uniform from 0.03 to 6 m whenever water flows; wall as new",
-        "an air pocket stands as high as the dip it hides behind",
-    ),
-    "meter error": Belief(
-        0.05,
-        "gain normal with 3 times what is stated or 5 %, with 15 % or with 40 %; zero normal with 1 or 6 % of the largest flow",
-        "wrong meter factor, worn parts, bad mounting; a low-flow cut-off acts as a zero",
-    ),
-    "wrong unit or swapped channel": Belief(
-        0.02,
-        "the ratios between common units, gauge for absolute pressure, taps swapped; wall as new",
-        "it happens once in a while, and then it is exact",
-    ),
-}
-"""Priors of all causes; two together have the product of theirs."""
-NOTHING = "nothing unusual"
-AFTER_STATIC = 0.2
-"""How much less likely a gauge offset is once a static has taken it off: it would have to come afterwards [-]."""
-BRANCH_SHARE = 0.25
-"""Prior share of a branch that takes a share of the flow among all leaks and branches [-]."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Correlation
-from fieldfit.inference.causes import NOTHING, Hypothesis, hypotheses, together
+from fieldfit.inference.beliefs import NOTHING
+from fieldfit.inference.causes import Hypothesis, hypotheses, together
 from fieldfit.inference.conditions import Conditions, conditions_of, noise_of, pooled
 from fieldfit.inference.telling_apart import Action, actions, alike, named
 from fieldfit.inference.weighing import Fitted, Size, Weighed, weigh

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 
 from fieldfit.field.readings import ReachReadings
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
-from fieldfit.inference.causes import NOTHING, offset_standard
+from fieldfit.inference.beliefs import NOTHING
+from fieldfit.inference.causes import offset_standard
 from fieldfit.inference.conditions import Conditions
 from fieldfit.inference.fault_model import AIR, BORE, BRANCH, GAIN, LEAK, LOCAL, ZERO
 from fieldfit.inference.weighing import Fitted

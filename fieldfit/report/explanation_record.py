@@ -6,7 +6,7 @@ import math
 from typing import Any
 
 from fieldfit.decisions.stress_test import Stress
-from fieldfit.inference.causes import NOTHING
+from fieldfit.inference.beliefs import NOTHING
 from fieldfit.inference.explanations import Explanation, Explanations
 from fieldfit.report.explanation_words import natural, next_step
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from fieldfit.decisions.stress_test import LARGEST, Stress
-from fieldfit.inference.causes import NOTHING
+from fieldfit.inference.beliefs import NOTHING
 from fieldfit.inference.explanations import Explanations
 from fieldfit.inference.telling_apart import named
 from fieldfit.report import explanation_words as words
@@ -49,25 +49,36 @@ def actions(found: Explanations) -> Table | None:
 
 
 def stress_lines(stress: tuple[Stress, ...]) -> tuple[str, ...]:
-    """Return one sentence for each input and part of the finding."""
-    return tuple(_stress_line(one) for one in stress)
+    """Return one sentence for each input."""
+    names = dict.fromkeys(one.input for one in stress)
+    return tuple(_stress_line([one for one in stress if one.input == name]) for name in names)
 
 
-def _stress_line(one: Stress) -> str:
-    """Say how far off one input would have to be."""
-    turns = f"to turn ‘{one.finding}’ into ‘{one.becomes}’"
-    if one.error is None or one.becomes is None:
-        far = f"{100.0 * LARGEST:.0f} %" if one.unit == "relative" else "three times the largest head loss"
-        return f"{_SUBJECTS[one.input]}: no error up to {far} changes ‘{one.finding}’."
-    sign = "high" if one.error > 0.0 else "low"
-    size = abs(one.error)
-    if one.unit == "relative":
-        how = f"{significant(100.0 * size, 2)} % too {_LARGE[sign] if one.input in ('bore', 'length') else sign}"
-    else:
-        how = f"{significant(size, 2)} m of head too {sign}"
-    times = one.times_limit
-    beyond = "" if times is None else f", {fixed(times, 1 if times < 10.0 else 0)} times its limit"
-    return f"{_SUBJECTS[one.input]} would have to {_VERBS[one.input]} {how}{beyond}, {turns}."
+def _stress_line(parts: list[Stress]) -> str:
+    """Say how far off one input would have to be to change each part of the finding."""
+    name, unit = parts[0].input, parts[0].unit
+    changes = [f"{_error(one)} to turn ‘{one.finding}’ into ‘{one.becomes}’" for one in parts if one.becomes]
+    far = f"{100.0 * LARGEST:.0f} %" if unit == "relative" else "three times the largest head loss"
+    left = " or ".join(f"‘{one.finding}’" for one in parts if not one.becomes)
+    if not changes:
+        return f"{_SUBJECTS[name]}: no error up to {far} changes {left}."
+    rest = f"; no error up to {far} changes {left}" if left else ""
+    return f"{_SUBJECTS[name]} would have to {_VERBS[name]} {', and '.join(changes)}{rest}."
+
+
+def _error(one: Stress) -> str:
+    """Return an error with its sign in words, and how far it lies beyond its limit."""
+    error, times = one.error or 0.0, one.times_limit
+    sign = "high" if error > 0.0 else "low"
+    if one.input in ("bore", "length"):
+        sign = "large" if error > 0.0 else "small"
+    how = (
+        f"{significant(100.0 * abs(error), 2)} %"
+        if one.unit == "relative"
+        else f"{significant(abs(error), 2)} m of head"
+    )
+    beyond = "" if times is None else f" ({fixed(times, 1 if times < 10.0 else 0)} times its limit)"
+    return f"{how} too {sign}{beyond}"
 
 
 _SUBJECTS = {
@@ -84,4 +95,3 @@ _VERBS = {
     "elevations": "be stated",
     "gauges": "read",
 }
-_LARGE = {"high": "large", "low": "small"}

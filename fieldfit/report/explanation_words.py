@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 
-from fieldfit.inference.causes import NOTHING
+from fieldfit.inference.beliefs import NOTHING
 from fieldfit.inference.explanations import Explanation, Explanations
 from fieldfit.inference.telling_apart import TELLING, Action, named
 from fieldfit.inference.weighing import Size
@@ -54,13 +54,16 @@ def sizes(one: Explanation, bore_m: float) -> str:
 def _size(size: Size, bore_m: float) -> str:
     """Return one size with its 95 % range."""
     key, best, low, high = natural(size, bore_m)
-    if key in ("branch_share", "meter_gain", "share_of_length_upstream"):
-        best, low, high = 100.0 * best, 100.0 * low, 100.0 * high
-    if key.endswith("m3_s"):
-        best, low, high = 1e3 * best, 1e3 * low, 1e3 * high
-    return _WORDS[key].format(value_with_band(best, (low, high), _UNITS.get(key, "")))
+    scale = 100.0 if key in _SHARES else 1e3 if key.endswith("m3_s") else 1.0
+    much = "much"
+    if key in _SIGNED and best < 0.0:
+        best, low, high, much = -best, -high, -low, "little"
+    value = value_with_band(scale * best, (scale * low, scale * high), _UNITS.get(key, ""))
+    return _WORDS[key].format(value, much)
 
 
+_SHARES = ("branch_share", "meter_gain", "share_of_length_upstream")
+_SIGNED = ("meter_gain", "meter_zero_m3_s", "offset_m")
 _KEYS = {
     "bore": "bore_mm",
     "wall": "roughness_mm",
@@ -88,12 +91,12 @@ _WORDS = {
     "bore_mm": "bore {}",
     "roughness_mm": "{} rough",
     "k": "K {}",
-    "offset_m": "head loss reads {} too much",
+    "offset_m": "head loss reads {} too {}",
     "head_step_m": "head step {}",
     "leak_m3_s": "{} lost or drawn",
     "branch_share": "{} of the flow through a branch",
-    "meter_gain": "meter reads {} too much",
-    "meter_zero_m3_s": "meter reads {} too much at every flow",
+    "meter_gain": "meter reads {} too {}",
+    "meter_zero_m3_s": "meter reads {} too {} at every flow",
     "share_of_length_upstream": "{} of the length upstream of it",
 }
 
@@ -151,12 +154,13 @@ def _leading(found: Explanations) -> str:
     if len(first.causes) > 1:
         end = "two together come nearest" if not first.explains else "two together do"
         return (
-            f"No single cause passes through the readings; {end}: {named(first.causes)} "
+            f"No single cause passes through the readings; {end}: {_article(named(first.causes))} "
             f"(probability {percent(first.probability)})."
         )
     if found.unexplained:
         return (
-            f"No cause, and no two together, pass through the readings: no one law fits them. Nearest comes {first.causes[0]}. "
+            f"No cause, and no two together, pass through the readings: no one law fits them. Nearest comes "
+            f"{_article(first.causes[0])}. "
             "Look at the log before believing any number drawn from it."
         )
     return f"Of the causes weighed, {first.causes[0]} is the most probable ({percent(found.probability(first.causes[0]))})."
@@ -173,10 +177,10 @@ def _not_apart(found: Explanations) -> str:
     """Say which causes the readings leave open."""
     if not found.alike:
         return ""
-    first, *others = found.alike
+    first, *others = (_article(name) for name in found.alike)
     return (
-        f"The readings cannot tell {first} from {_listed(others)}: at every flow tested their curves lie within two standard "
-        "errors of each other."
+        f"The readings cannot tell {first} from {_listed(others)}: at every flow tested their curves lie within two "
+        "standard errors of each other."
     )
 
 
@@ -201,7 +205,21 @@ def _separation(one: Action) -> str:
     """Say how far apart two causes would be."""
     far = f"over {CLEAR:.0f}" if one.separation > CLEAR else significant(one.separation, 2)
     doubt = "" if one.separation >= TELLING else ", which is not enough alone"
-    return f"{one.parts[0]} and {one.parts[1]} would then lie {far} standard errors apart{doubt}"
+    return f"{_article(one.parts[0])} and {_article(one.parts[1])} would then lie {far} standard errors apart{doubt}"
+
+
+def _article(name: str) -> str:
+    """Return a cause with its article.
+
+    Examples
+    --------
+    >>> _article("rough wall"), _article("leak or open branch"), _article("rough wall with trapped air")
+    ('a rough wall', 'a leak or an open branch', 'a rough wall with trapped air')
+    """
+    first, *second = name.split(" with ")
+    if second:
+        return f"{_article(first)} with {_article(second[0])}"
+    return first if first == "trapped air" else f"a {first.replace('or open', 'or an open')}"
 
 
 def _listed(names: list[str]) -> str:

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.inference.causes import NOTHING
+from fieldfit.inference.beliefs import NOTHING
 from fieldfit.inference.conditions import noise_of
 from fieldfit.inference.explanations import Explanation, Explanations
 from fieldfit.inference.telling_apart import CLOSE, HIGH_FLOW, LOW_FLOW, apart
