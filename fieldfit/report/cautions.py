@@ -23,6 +23,8 @@ FITTINGS_SHARE = 0.2
 """Share of the head loss that fittings may make."""
 FLOW_RANGE = 1.5
 """Largest over smallest flow under which the readings cannot show a wrong zero."""
+LIKELY = 0.5
+"""Probability of a wall alone below which something else is to be looked at first [-]."""
 SET_ASIDE_SHARE = 0.5
 """Share of rows set aside from which the log itself is in question."""
 CROSS_CHECK = 1.1
@@ -45,10 +47,30 @@ def _of_reach(reach: ReachFinding, section: Section) -> Iterator[Caution]:
     """Check one reach."""
     if reach.wall.state == "no estimate":
         yield Caution(about="no estimate", text=reach.wall.because)
+    yield from _rivals(reach)
     yield from _statics(reach.readings)
     yield from _fit(reach)
     yield from _coverage(reach)
     yield from _against_new(reach, section)
+
+
+def _rivals(reach: ReachFinding) -> Iterator[Caution]:
+    """Check whether something other than the wall explains the readings better."""
+    found = reach.explanations
+    if found is None:
+        return
+    first = " with ".join(found.ranked[0].causes)
+    if found.unexplained:
+        best = f"; nearest comes {first}" if not found.ranked[0].explains else f"; together, {first} would"
+        text = f"No single cause explains the readings: neither a rough wall nor any one fault weighed{best}."
+    elif found.probability("rough wall") < LIKELY:
+        text = (
+            f"What explains these readings best is not the wall but {first} (probability "
+            f"{100.0 * found.ranked[0].probability:.0f} %; a wall alone {100.0 * found.probability('rough wall'):.0f} %)."
+        )
+    else:
+        return
+    yield Caution(about="explanation", text=f"{text} See what else could explain it before using the roughness.")
 
 
 def _statics(readings: ReachReadings) -> Iterator[Caution]:
