@@ -8,6 +8,7 @@ from pathlib import Path
 
 import numpy as np
 
+from fieldfit.bore_and_taps import survey_of, with_deposit
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.decisions.stress_test import stress_test
 from fieldfit.errors import InputError
@@ -27,6 +28,7 @@ from fieldfit.inference.estimate import estimate
 from fieldfit.inference.explanations import explain, new_roughness
 from fieldfit.report.cautions import cautions
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+from fieldfit.report.survey_cautions import survey_cautions
 
 
 def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
@@ -80,13 +82,18 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
     reaches = tuple(
         _assess_reach(section_of_reach(section, k), of_reach, every[k]) for k, of_reach in enumerate(readings)
     )
+    together = survey_of(section, plateaus, (log, screening)) if len(section.taps) > 2 else None
     return CampaignFinding(
         date=date or (log.start.date() if log.start else None),
         log=log,
         screening=screening,
         plateaus=plateaus,
-        reaches=reaches,
-        cautions=cautions(section, log, screening, plateaus, reaches),
+        reaches=tuple(with_deposit(section, plateaus, one, k) for k, one in enumerate(reaches)),
+        cautions=(
+            *survey_cautions(section, plateaus, together),
+            *cautions(section, log, screening, plateaus, reaches),
+        ),
+        survey=together,
     )
 
 

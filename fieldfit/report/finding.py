@@ -32,6 +32,8 @@ class ScreenedLog(Protocol):
 
 if TYPE_CHECKING:
     from fieldfit.decisions.ageing import Ageing
+    from fieldfit.decisions.deposit import DepositFinding
+    from fieldfit.inference.survey_finding import Survey
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -58,6 +60,8 @@ class ReachFinding:
     """What else could explain the readings; None without a turbulent reading."""
     stress: tuple[Stress, ...] = ()
     """How wrong each input would have to be to change the finding; empty without an estimate."""
+    deposit: DepositFinding | None = None
+    """The loss read as roughness, as bore, and as every mixture of the two; None when nothing was fitted."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -78,6 +82,8 @@ class CampaignFinding:
     """What to know beside the answer."""
     campaign: Campaign | None = None
     """What the section file says of that day; None for a log that it does not name."""
+    survey: Survey | None = None
+    """What all taps together say; None with two taps, or when no plateau can be used."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -15,6 +15,7 @@ from fieldfit.hydraulics.regime import LAMINAR_LIMIT, TURBULENT_LIMIT
 from fieldfit.report import captions, digits, explanation_tables, explanation_words, tables, words
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.strips import strips
+from fieldfit.report.survey_page import deposit_block, survey_block
 
 if TYPE_CHECKING:
     from jinja2 import Environment
@@ -166,6 +167,7 @@ def _campaign(finding: Finding, index: int) -> dict[str, Any]:
         "cautions": [
             c for c in campaign.cautions if not any(c.text.endswith(r.wall.because) for r in campaign.reaches)
         ],
+        "survey": survey_block(campaign, f"c{index}s"),
         "reaches": [_reach(finding, campaign, (index, k)) for k in range(len(campaign.reaches))],
         "rows": tables.rows(campaign),
         "file": campaign.log.file,
@@ -189,7 +191,7 @@ def _reach(finding: Finding, campaign: CampaignFinding, place: tuple[int, int]) 
         "headline": words.headline(reach),
         "answer": words.answer(reach),
         "strips": strips(reach),
-        "figures": _figures(campaign, reach, f"c{place[0]}r{place[1]}"),
+        "figures": [] if campaign.survey else _figures(campaign, reach, f"c{place[0]}r{place[1]}"),
         "results": tables.results(reach),
         "correlation": digits.significant(200.0 * finding.section.correlation.standard, 2),
         "comparison": tables.comparison(reach),
@@ -200,7 +202,8 @@ def _reach(finding: Finding, campaign: CampaignFinding, place: tuple[int, int]) 
         else f"Reduced χ² is {digits.significant(chi, 2)}, with {wall.degrees_of_freedom} degrees of freedom.",
         "levelling": tables.levelling(readings),
         "budget": tables.budget(reach),
-        "explanations": _explanations(reach, f"c{place[0]}r{place[1]}e"),
+        "explanations": None if campaign.survey else _explanations(reach, f"c{place[0]}r{place[1]}e"),
+        "deposit": None if campaign.survey else deposit_block(reach, finding.section, f"c{place[0]}r{place[1]}d"),
         "stress": explanation_tables.stress_lines(reach.stress),
     }
 
@@ -249,5 +252,7 @@ def _figures(campaign: CampaignFinding, reach: ReachFinding, name: str) -> list[
 def _shown(campaign: dict[str, Any]) -> list[dict[str, Any]]:
     """Return all figures of a campaign."""
     rivals = [reach["explanations"]["figure"] for reach in campaign["reaches"] if reach["explanations"]]
+    rivals += [reach["deposit"]["figure"] for reach in campaign["reaches"] if reach["deposit"]]
+    rivals += [campaign["survey"]["figure"]] if campaign["survey"] else []
     several = [figure for reach in campaign["reaches"] for figure in reach["figures"]]
     return several + [figure for figure in rivals if figure] + [campaign["log_figure"]]

@@ -12,6 +12,7 @@ from fieldfit.field.section import Section
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Wall
 from fieldfit.report.explanation_record import explanations_record, stress_record
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+from fieldfit.report.survey_record import deposit_record, survey_record
 from fieldfit.report.trend_record import ageing_record
 
 SCHEMA = 1
@@ -91,6 +92,7 @@ def _campaign(campaign: CampaignFinding) -> Record:
         "reaches": [_reach(reach) for reach in campaign.reaches],
         "warnings": [{"about": caution.about, "text": caution.text} for caution in campaign.cautions],
         "statics": int(campaign.plateaus.static.size) - flowing,
+        "survey": survey_record(campaign.survey),
     }
 
 
@@ -127,6 +129,7 @@ def _reach(reach: ReachFinding) -> Record:
         "monte_carlo": _monte_carlo(wall),
         "readings": _readings(wall.plateaus),
         "stress": stress_record(reach.stress),
+        "deposit": deposit_record(reach.deposit),
     }
 
 

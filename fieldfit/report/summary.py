@@ -7,6 +7,7 @@ import textwrap
 from fieldfit.field.section import Section
 from fieldfit.report import digits, explanation_words, words
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
+from fieldfit.report.survey_page import survey_lines
 
 WIDTH = 88
 """Longest line."""
@@ -29,6 +30,8 @@ def summary(finding: Finding) -> str:
     lines = [title(finding.section)]
     several = len(finding.campaigns) > 1 or len(finding.campaigns[0].reaches) > 1
     for campaign in finding.campaigns:
+        for name, text in survey_lines(campaign):
+            lines += folded(name, text)
         for reach in campaign.reaches:
             if several:
                 lines += ["", _place(campaign, reach)]
