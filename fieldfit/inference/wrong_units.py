@@ -42,6 +42,11 @@ FLOW_RATIOS: tuple[tuple[str, float], ...] = (
 SHARES = {"both": 0.30, "one": 0.15, "flow": 0.25, "absolute": 0.10, "swapped": 0.20}
 """Prior shares of the kinds of mistake [-]: both gauges, one gauge, flow, one absolute, taps swapped."""
 
+BEYOND = 30.0
+"""Stated standard uncertainties of gauges and survey by which no static differs from what a mistake foretells [-]."""
+IMPOSSIBLE = 1e-300
+"""Share of a mistake that the static rules out [-]."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Option:
@@ -119,6 +124,8 @@ def _by_static(option: Option, readings: ReachReadings) -> float:
         return 1.0
     stated = max(level.expected_m, 0.01)
     without, within = level.offset_m / stated, (level.offset_m - option.at_rest_m) / stated
+    if abs(within) > BEYOND and abs(within) > abs(without):
+        return IMPOSSIBLE
     return float((1.0 + without**2) / (1.0 + within**2))
 
 

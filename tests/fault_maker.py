@@ -6,7 +6,7 @@ instruments' makers state them, and the friction correlation is off by a level a
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 
 import numpy as np
 from fluids.friction import Colebrook
@@ -238,41 +238,40 @@ def roughness_for(place, ratio):
     return 3.7 * (10.0 ** (-0.5 / root) - 2.51 / (reynolds * root)) * place.bore_m
 
 
-def faults_of(rng, place, cause, size):
+def fault_of(rng, place, cause, size):
     """One fault of a kind, of size 0, 1 or 2; signs and places are drawn."""
     sign = float(rng.choice([-1.0, 1.0]))
     top = float(place.flows[-1])
-    quiet = replace(NOTHING)
-    if cause == "rough wall":
-        return replace(quiet, roughness_m=roughness_for(place, (1.4, 1.9, 2.6)[size]))
-    if cause == "reduced bore":
-        return replace(quiet, bore=(0.94, 0.87, 0.75)[size])
-    if cause == "local loss":
-        friction = 0.02 * place.length_m / place.bore_m
-        return replace(quiet, k=(0.3, 1.0, 4.0)[size] * friction)
-    if cause == "gauge offset":
-        stated = np.sqrt(2.0 / 3.0) * place.gauge_limit_pa / 9800.0
-        return replace(quiet, offset_m=sign * (4.0, 8.0, 20.0)[size] * stated)
-    if cause == "leak or open branch":
-        return replace(
-            quiet, leak_m3_s=(0.06, 0.12, 0.25)[size] * top, side=int(sign), place=0.5 + sign * rng.uniform(-0.5, 0.2)
-        )
-    if cause == "trapped air":
-        return replace(quiet, air_m=(0.1, 0.4, 1.5)[size])
-    if cause == "meter error":
-        if rng.random() < 0.5:
-            return replace(quiet, gain=1.0 + sign * (0.12, 0.2, 0.35)[size])
-        return replace(quiet, zero_m3_s=sign * (0.03, 0.07, 0.12)[size] * top)
-    return wrong_unit(rng, size)
+    makers = {
+        "rough wall": lambda: Fault(roughness_m=roughness_for(place, (1.4, 1.9, 2.6)[size])),
+        "reduced bore": lambda: Fault(bore=(0.94, 0.87, 0.75)[size]),
+        "local loss": lambda: Fault(k=(0.3, 1.0, 4.0)[size] * 0.02 * place.length_m / place.bore_m),
+        "gauge offset": lambda: Fault(
+            offset_m=sign * (4.0, 8.0, 20.0)[size] * np.sqrt(2.0 / 3.0) * place.gauge_limit_pa / 9800.0
+        ),
+        "leak or open branch": lambda: Fault(
+            leak_m3_s=(0.06, 0.12, 0.25)[size] * top, side=int(sign), place=0.5 + sign * rng.uniform(-0.5, 0.2)
+        ),
+        "trapped air": lambda: Fault(air_m=(0.1, 0.4, 1.5)[size]),
+        "meter error": lambda: meter_fault(rng, top, sign, size),
+        "wrong unit or swapped channel": lambda: wrong_unit(rng, size),
+    }
+    return makers[cause]()
+
+
+def meter_fault(rng, top, sign, size):
+    """A wrong gain or a wrong zero, as likely."""
+    if rng.random() < 0.5:
+        return Fault(gain=1.0 + sign * (0.12, 0.2, 0.35)[size])
+    return Fault(zero_m3_s=sign * (0.03, 0.07, 0.12)[size] * top)
 
 
 def wrong_unit(rng, size):
     """A mistake of unit or channel: small, middling or large."""
     way = float(rng.choice([-1.0, 1.0]))
-    if size == 0:
-        return rng.choice([Fault(gauges=(1.422334**way,) * 2), Fault(gauges=(2.306659**way,) * 2)])
-    if size == 1:
-        return rng.choice([Fault(flow_unit=3.785412**way), Fault(flow_unit=3.6**way), Fault(flow_unit=4.54609**way)])
-    return rng.choice(
-        [Fault(swapped=True), Fault(gauges=(6.894757**way,) * 2), Fault(gauges=(10.19716**way,) * 2), Fault(gauges=(1.0, 14.50377**way))]
-    )  # fmt: skip
+    kinds = (
+        [Fault(gauges=(1.422334**way,) * 2), Fault(gauges=(2.306659**way,) * 2)],
+        [Fault(flow_unit=3.785412**way), Fault(flow_unit=3.6**way), Fault(flow_unit=4.54609**way)],
+        [Fault(swapped=True), Fault(gauges=(6.894757**way,) * 2), Fault(gauges=(10.19716**way,) * 2)],
+    )[size]
+    return kinds[int(rng.integers(len(kinds)))]
