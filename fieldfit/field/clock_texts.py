@@ -224,7 +224,7 @@ def read_times_of_day(times: Series[Any], place: ClockPlace, day: dt.date | None
         return _durations(texts, place)
     first_day = day.isoformat() if day else _NO_DAY
     stamps, _ = read_stamps(first_day + " " + texts, place, said)
-    there = np.flatnonzero(~np.isnat(stamps))
+    stamps, there = stamps.copy(), np.flatnonzero(~np.isnat(stamps))
     past = np.diff(stamps[there]) < -_HALF_A_DAY
     if past.any():
         stamps[there[1:]] += np.cumsum(past).astype("timedelta64[D]")

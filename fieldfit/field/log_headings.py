@@ -115,7 +115,10 @@ def find_headings(lines: Sequence[str], wanted: Sequence[Wanted], file: str) -> 
             places = [heading_places(texts, column) for column in wanted]
             if all(places):
                 found = [only_place(place, texts, f"{file}:{number}") for place in places]
-                return Headings(line=number, separator=separator, texts=texts, found=tuple(found), wanted=tuple(wanted))
+                names = Headings(
+                    line=number, separator=separator, texts=texts, found=tuple(found), wanted=tuple(wanted)
+                )
+                return _with_units(names, lines, file)
             named = sum(1 for place in places if place)
             if named > closest[0]:
                 closest = (named, number, texts)
