@@ -1,4 +1,4 @@
-"""Write the sample data: four test sections of an invented works and its town, with known truth.
+"""Write the sample data: six test sections of an invented works and its town, with known truth.
 
 Run it with ``python sample_data/make.py``: it writes the same files every time. The physics comes from the simulator
 in ``tests/``, which shares nothing with the program, so what the program finds can be held against ``truth.csv``.
@@ -12,8 +12,9 @@ from pathlib import Path
 import numpy as np
 
 HERE = Path(__file__).resolve().parent
-sys.path.insert(0, str(HERE.parent / "tests"))
+sys.path[:0] = [str(HERE), str(HERE.parent / "tests")]
 
+import tanyard  # noqa: E402
 from campaign_simulator import Campaign, simulate_campaigns  # noqa: E402
 from crew import FOOT, GPM, INCH, PLANT, PSI, STREET, WORKS, log_text, sheet_text  # noqa: E402
 from instruments import Gauge, Kit, Limits, Meter, Pipe, Plan  # noqa: E402
@@ -230,7 +231,7 @@ head = "6 m"
 
 [threshold]
 c = 95
-capacity = "19 L/s"
+capacity = "20 L/s"
 by = 2034-01-01
 """
 
@@ -414,13 +415,14 @@ def main():
         write(
             HERE / "mill_rise" / f"{date}.csv", log_text(day, PLANT, start=dt.datetime.fromisoformat(f"{date}T09:00"))
         )
+    survey = tanyard.survey_day([SEED, 6])
+    files[tanyard.FOLDER] = (tanyard.section_file(), tanyard.LOG, tanyard.log_file(survey))
     for folder, (section, log_name, log) in files.items():
         write(HERE / folder / "section.toml", section)
         write(HERE / folder / log_name, log)
     columns = "section,roughness_mm,equivalent_roughness_mm,bore_mm,length_m,meter_gain_percent,correlation_percent"
-    write(
-        HERE / "truth.csv", "\n".join([columns, *(truth_row(*item) for item in {**days, **named(hill)}.items())]) + "\n"
-    )
+    rows = [truth_row(*item) for item in {**days, **named(hill)}.items()]
+    write(HERE / "truth.csv", "\n".join([columns, *rows, tanyard.truth_row(survey)]) + "\n")
 
 
 if __name__ == "__main__":

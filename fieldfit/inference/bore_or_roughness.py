@@ -32,6 +32,8 @@ ROUGHEST = 0.06
 """Largest relative roughness of the map: a little beyond what may be called one."""
 WIDEST = 4.5
 """Standard deviations the map reaches beyond what the readings allow."""
+HIDDEN = 0.005
+"""Narrowing under which nobody would speak of a deposit, as a share of the bore."""
 NARROWEST = 0.2
 """Smallest bore of the map, as a share of the laid one."""
 
@@ -83,8 +85,8 @@ def bore_map(
     """Map bore and roughness.
 
     Every stated error but the bore's is counted in through the covariance of the readings it makes. Before any reading
-    every roughness is equally likely by its logarithm, and every bore under the laid one by its own; above, as far as
-    the laid bore's stated limit allows.
+    every roughness is equally likely by its logarithm, and so is every thickness of deposit, from what the laid bore's
+    own uncertainty would hide on; above the laid bore, as far as its stated limit allows.
 
     Parameters
     ----------
@@ -265,14 +267,15 @@ def _log_likelihood(model: HeadModel, axes: tuple[Array, Array], covariance: Arr
 
 
 def _log_prior(model: HeadModel, bore: Array) -> Array:
-    """Return the log prior of each bore: any under the laid one, and above as far as its stated limit allows, (N,)."""
+    """Return the log prior of each bore, (N,): thicknesses by their logarithm, and no bore beyond the stated limit."""
     from scipy.special import ndtr
 
     laid = model.readings.bore
     spread = max(laid.standard, 1e-4 * laid.value)
     above = (bore - laid.value) / spread
     beyond = np.clip(0.5 - above / (2.0 * np.sqrt(3.0)), 0.0, 1.0) if laid.shape == "rectangular" else ndtr(-above)
-    return np.asarray(np.log(np.maximum(beyond, 1e-12)))
+    hidden = max(spread, HIDDEN * laid.value)
+    return np.asarray(np.log(np.maximum(beyond, 1e-12)) - np.log(np.maximum(laid.value - bore, 0.0) + hidden))
 
 
 def _normal(log: Array) -> Array:

@@ -54,7 +54,11 @@ def survey(readings: SurveyReadings, limit: Correlation) -> Survey:
     one, chance = found[0].fit, probabilities(found)
     best = found[int(np.argmax(chance))]
     likely = tuple(_likely(found[i], float(chance[i]), limit) for i in np.argsort(-chance) if chance[i] >= LIKELY)
-    alike = tuple(i for i in range(1, len(likely)) if likely[i].probability * CLOSE > likely[0].probability)
+    alike = tuple(
+        i
+        for i in range(1, len(likely))
+        if likely[i].probability * CLOSE > likely[0].probability and not _holds(likely[i], likely[0])
+    )
     smallest = _smallest(one)
     return Survey(
         readings=readings,
@@ -71,6 +75,11 @@ def survey(readings: SurveyReadings, limit: Correlation) -> Survey:
         pulls=tuple(sorted(zip(model.errors.names, best.fit.u.tolist(), strict=False), key=lambda pull: -abs(pull[1]))),
         grade=grade_line(best.fit, one),
     )
+
+
+def _holds(other: Likely, first: Likely) -> bool:
+    """Return whether an explanation is the first one with a second local loss added: a refinement, not a rival."""
+    return first.cause == "local loss" and other.cause == "two local losses" and first.reaches[0] in other.reaches
 
 
 def _place(model: SurveyModel, reach: int) -> Place:

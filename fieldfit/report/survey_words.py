@@ -78,10 +78,9 @@ def _likely_words(found: Survey, one: Likely) -> str:
 
 def _alike_words(found: Survey) -> list[str]:
     """Say what cannot be told from the likeliest explanation, and what would."""
-    told = []
-    for index in found.alike:
-        one = found.likely[index]
-        told.append(f"Not to be told from it: {short(found, one)} (probability {percent(one.probability)}).")
+    rivals = [found.likely[index] for index in found.alike]
+    listed = [f"{short(found, one)} (probability {percent(one.probability)})" for one in rivals]
+    told = [f"Not to be told from it: {'; '.join(listed)}."] if listed else []
     if found.apart is not None:
         reach = found.likely[0].reaches
         told.append(
@@ -149,9 +148,9 @@ def _same_words(test: SameWall | None, first: Likely) -> str:
         return "No two reaches are of one material, so their walls cannot be held against each other."
     chance = probability_words(test.probability)
     if test.probability < NOT_ALIKE:
-        return f"One roughness and no local loss for all reaches is out of the question: chance alone gives so much {chance}."
+        return f"One roughness and no local loss for all reaches is out of the question: chance alone makes the taps stray so far {chance}."
     doubt = "in doubt" if test.probability < DOUBTFUL else "in keeping with the readings"
-    told = f"One roughness for all reaches is {doubt}: chance alone gives as much difference {chance}."
+    told = f"One roughness for all reaches is {doubt}: chance alone makes them differ as much {chance}."
     return told if first.cause == "one wall" or test.probability < DOUBTFUL else told.replace("is in", "would be in", 1)
 
 
@@ -187,6 +186,11 @@ def _side_words(found: Survey) -> str:
 
 def caption(found: Survey) -> str:
     """Say what to see in the grade line."""
+    return f"{_seen(found)} Dots are readings; their 95 % bars hold gauges and heights, against the first tap."
+
+
+def _seen(found: Survey) -> str:
+    """Say what the line does."""
     first = found.likely[0]
     flow = litres(found.grade.flow_m3_s)
     if first.cause == "local loss":
