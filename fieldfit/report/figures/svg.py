@@ -13,6 +13,8 @@ if TYPE_CHECKING:
 # Letters become outlines: the figure then prints alike on every machine, and a hostile name stays a drawing.
 SETTINGS: Any = {"svg.fonttype": "path", "svg.hashsalt": "fieldfit", "path.simplify_threshold": 0.3}
 NO_METADATA = dict.fromkeys(("Date", "Creator", "Format", "Type"))
+_OUTLINE = re.compile(r'<path id="([^"]+)" d="([^"]+)" transform="scale\(0\.015625\)"/> ?')
+_LETTER = re.compile(r'<use xlink:href="#([^"]+)"(?: transform="translate\(([-\d.]+) 0\)")?/> ?')
 
 
 def svg(figures: Mapping[str, Figure]) -> dict[str, str]:
@@ -26,17 +28,19 @@ def svg(figures: Mapping[str, Figure]) -> dict[str, str]:
     Returns
     -------
     dict of str to str
-        SVG elements by the same names, as wide as the room they are given.
+        SVG elements by the same names, as wide as the room they are given. They belong on one page: the outline of
+        a letter stands in the first figure that uses it.
     """
     import matplotlib
     from matplotlib.backends.backend_svg import FigureCanvasSVG
 
     drawn = {}
+    outlines: dict[str, str] = {}
     with matplotlib.rc_context(SETTINGS):
         for name, figure in figures.items():
             out = io.StringIO()
             FigureCanvasSVG(figure).print_svg(out, metadata=NO_METADATA)  # type: ignore[no-untyped-call]
-            drawn[name] = _for_page(out.getvalue(), name)
+            drawn[name] = _with_shared_letters(_for_page(out.getvalue(), name), name, outlines)
     return drawn
 
 
@@ -52,3 +56,20 @@ def _for_page(text: str, name: str) -> str:
     text = re.sub(r'( id="|href="#|url\(#)', rf"\g<1>{name}-", text)
     text = re.sub(r"\s*\n\s*", " ", text)
     return text.replace("<svg ", '<svg aria-hidden="true" ', 1)
+
+
+def _with_shared_letters(text: str, name: str, outlines: dict[str, str]) -> str:
+    """Keep only the outlines of letters that no figure before has; they are half of a page otherwise."""
+    called: dict[str, str] = {}
+
+    def define(found: re.Match[str]) -> str:
+        new = found[2] not in outlines
+        called[found[1]] = outlines.setdefault(found[2], f"{name}-{len(outlines)}")
+        return f'<path id="{called[found[1]]}" d="{found[2]}" transform="scale(.015625)"/>' if new else ""
+
+    def use(found: re.Match[str]) -> str:
+        place = f' x="{found[2]}"' if found[2] else ""
+        return f'<use href="#{called.get(found[1], found[1])}"{place}/>'
+
+    text = _LETTER.sub(use, _OUTLINE.sub(define, text))
+    return text.replace("<defs> </defs> ", "")
