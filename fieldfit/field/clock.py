@@ -15,6 +15,7 @@ from fieldfit.field.clock_numbers import number_stamps
 from fieldfit.field.clock_texts import (
     ADVICE,
     ClockPlace,
+    first_text,
     is_time_of_day,
     read_stamps,
     read_times_of_day,
@@ -70,23 +71,24 @@ def read_clock(
     """
     if isinstance(place, tuple):
         place = ClockPlace(file=place[0], heading=place[1])
-    given = times.dropna()
-    if given.empty:
+    first = first_text(times)
+    if first is None:
         raise InputError("no row has a time", "Check that the right column is named 'time'.", place.where)
-    first = str(given.iloc[0]).strip()
     if dates is not None:
         times, dates_known = with_days(times, dates, said), True
+        if first_text(times) is None:
+            raise InputError("no row has a day with its time", "Fill in the column of dates.", place.where)
     else:
         dates_known = not is_time_of_day(first) or place.known.day is not None
     stamps, universal = _stamps(times, first, line, place, said)
-    unread = np.flatnonzero(np.isnat(stamps) & times.notna().to_numpy())
-    if unread.size:
+    absent = np.isnat(stamps)
+    unread = np.flatnonzero(absent & times.notna().to_numpy()) if absent.any() else ()
+    if len(unread):
         row = int(unread[0])
         seen = f"'{shown(str(times.iloc[row]))}' is not a date and time that can be read only one way"
-        raise InputError(seen, ADVICE, f"{place.file}:{line[row]}, column '{shown(place.heading)}'")
-    there = stamps[~np.isnat(stamps)]
-    if there.size == 0:
-        raise InputError("no row has a day with its time", "Fill in the column of dates.", place.where)
+        order = place.known.order
+        advice = f"{ADVICE} The dates are said to be {order}." if order else ADVICE
+        raise InputError(seen, advice, f"{place.file}:{line[row]}, column '{shown(place.heading)}'")
     if not universal and dates_known:
         stamps = straightened(stamps, said)
     if place.zone_s is not None and not universal:
@@ -101,13 +103,13 @@ def _stamps(
     times: Series[Any], first: str, line: NDArray[np.int64], place: ClockPlace, said: list[str]
 ) -> tuple[NDArray[np.datetime64], bool]:
     """Return the times as stamps, and whether they are in UTC."""
-    if re.fullmatch(r"[0-9]*[.,]?[0-9]*(?:[eE]\+?[0-9]+)?", first) and ":" not in str(times.dropna().iloc[0]):
+    if re.fullmatch(r"[0-9]*[.,]?[0-9]*(?:[eE]\+?[0-9]+)?", first) and first_text(times) == first:
         import pandas as pd
 
         numbers = pd.to_numeric(times.str.strip().str.replace(",", ".", regex=False), errors="coerce")
         values = numbers.to_numpy(dtype=np.float64)
         return number_stamps(values, (f"{place.file}:{line[0]}", place.heading), said), True
-    if is_time_of_day(first) and str(times.dropna().iloc[0]).strip() == first:
+    if is_time_of_day(first) and first_text(times) == first:
         return read_times_of_day(times, place, place.known.day, said), False
     return read_stamps(times, place, said)
 

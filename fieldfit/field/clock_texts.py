@@ -56,6 +56,15 @@ class ClockPlace:
         return f"{self.file}, column '{shown(self.heading)}'"
 
 
+def first_text(texts: Series[Any]) -> str | None:
+    """Return the first text that is there, trimmed; None where there is none."""
+    # Most logs have a time in their first row: a look at it spares a look at all of them.
+    if len(texts) and isinstance(texts.iloc[0], str):
+        return str(texts.iloc[0]).strip()
+    given = texts.dropna()
+    return str(given.iloc[0]).strip() if len(given) else None
+
+
 def is_time_of_day(text: str) -> bool:
     """Return whether a text is a time of day, or a time from the start in hours, minutes and seconds.
 
@@ -97,10 +106,10 @@ def read_stamps(times: Series[Any], place: ClockPlace, said: list[str]) -> tuple
     InputError
         When only some times have a zone, or day and month may change places and it matters.
     """
-    first = str(times.dropna().iloc[0]).strip()
+    first = first_text(times) or ""
     if is_iso(first):
         stamps = _iso_stamps(times, place, said)
-        if not (np.isnat(stamps) & times.notna().to_numpy()).any():
+        if not np.isnat(stamps).any() or not (np.isnat(stamps) & times.notna().to_numpy()).any():
             return stamps, _has_zone(first)
     plain, ahead = _without_zones(times.str.strip(), place, said)
     stamps = read_dates(plain, place.known, place.where, said)
@@ -116,15 +125,15 @@ def _iso_stamps(times: Series[Any], place: ClockPlace, said: list[str]) -> Stamp
     """Return ISO times without zones as they stand, and times with zones in UTC."""
     import pandas as pd
 
-    given = times.dropna()
     # A look at some rows is enough: a logger that writes zones writes them all the way.
-    zoned = {_has_zone(str(text).strip()) for text in given.iloc[:: max(1, len(given) // 200)]}
+    few = times.iloc[:: max(1, len(times) // 200)].dropna()
+    zoned = {_has_zone(str(text).strip()) for text in few}
     if len(zoned) > 1:
         raise InputError("only some times have a time zone", "Write all times in one zone.", place.where)
     if zoned == {True}:
         said.append("Times with a zone were turned into UTC.")
     stamps = pd.to_datetime(times, format="ISO8601", errors="coerce", utc=True)
-    if stamps.isna().sum() > times.isna().sum():
+    if stamps.isna().any() and stamps.isna().sum() > times.isna().sum():
         plain = times.str.strip().str.replace(",", ".", regex=False)
         stamps = pd.to_datetime(plain, format="ISO8601", errors="coerce", utc=True)
     return np.asarray(stamps.dt.tz_localize(None).to_numpy())
@@ -134,7 +143,7 @@ def _without_zones(
     times: Series[Any], place: ClockPlace, said: list[str]
 ) -> tuple[Series[Any], NDArray[np.timedelta64] | None]:
     """Return times without their zones, and by how much each is ahead of UTC; None where there are none."""
-    first = str(times.dropna().iloc[0])
+    first = first_text(times) or ""
     named = re.search(_NAMED_ZONE, first)
     if re.search(_ZONE, first) is None and (named is None or re.search(r"(?i)[0-9]\s?[ap]m$", first)):
         return times, None

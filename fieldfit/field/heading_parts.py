@@ -94,11 +94,14 @@ def heading_places(texts: Sequence[str], wanted: Wanted) -> list[tuple[int, str 
     ]
 
 
-def only_place(places: list[tuple[int, str | None]], texts: Sequence[str], where: str) -> tuple[int, str | None]:
+def only_place(
+    places: list[tuple[int, str | None]], texts: Sequence[str], where: str, named: bool = True
+) -> tuple[int, str | None]:
     """Return the one place of a column."""
     if len({place for place, _ in places}) > 1:
         names = ", ".join(f"'{shown(texts[place])}'" for place, _ in places)
         advice = "Write the whole heading, unit and all, as its column in the section file."
+        advice = advice if named else "Give the one that is not meant another name."
         raise InputError(f"several headings fit one column: {names}", advice, where)
     return places[0]
 

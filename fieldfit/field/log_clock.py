@@ -11,7 +11,7 @@ import numpy as np
 
 from fieldfit.errors import InputError
 from fieldfit.field.clock import Clock, count_from_start, read_clock
-from fieldfit.field.clock_texts import ClockPlace, is_time_of_day
+from fieldfit.field.clock_texts import ClockPlace, first_text, is_time_of_day
 from fieldfit.field.date_forms import Known
 from fieldfit.field.log_rows import Rows
 from fieldfit.field.log_start import LogStart, log_start
@@ -56,7 +56,7 @@ def log_clock(
         return replace(clock, start=_started(hints.start, begun.start, said)), True
     dates = None if time.date_position is None else rows.texts[time.date_position]
     times = rows.texts[time.position]
-    first = str(times.dropna().iloc[0]) if times.notna().any() else ""
+    first = first_text(times) or ""
     if dates is None and is_time_of_day(first) and settles.day is None:
         day = log_start(above, settles, path.name, said).day
         settles = replace(settles, day=day)

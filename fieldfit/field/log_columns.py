@@ -158,7 +158,7 @@ def _by_name(
         wanted = Wanted(column=name.replace("_", " "), dimension=dimension, unit=None)
         places = heading_places(texts, wanted)
         if places:
-            place, its_unit = only_place(places, headings.texts, where)
+            place, its_unit = only_place(places, headings.texts, where, named=False)
             below = bare_unit(headings.units[place]) if place < len(headings.units) else ""
             column = resolve_column(wanted, headings, place, its_unit or below or None, where)
             say_unit(wanted, its_unit, column, said)

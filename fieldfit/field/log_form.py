@@ -157,7 +157,13 @@ def _form(headings: Headings, columns: Columns, lines: Sequence[str], hints: Log
     widest = max((len(row) for _, row in samples), default=names)
     if widest <= max(column.position for column in columns.instruments.values()):
         advice = "Headings that hold a comma must stand in quotation marks."
-        raise InputError(f"{widest} fields stand under {names} headings", advice, f"{file}:{samples[0][0]}")
+        if widest == 1:
+            advice = "Part the rows by the same mark as the headings."
+        raise InputError(
+            f"{widest} {'fields stand' if widest > 1 else 'field stands'} under {names} headings",
+            advice,
+            f"{file}:{samples[0][0]}",
+        )
     cells = [row[place] for _, row in samples for place in columns.of_numbers if place < len(row)]
     return Form(
         headings=headings,

@@ -179,7 +179,8 @@ def _with_units(names: Headings, lines: Sequence[str], file: str) -> Headings:
     for (place, above), its_unit in zip(names.found, below, strict=True):
         if above and its_unit and above.casefold() != its_unit.casefold():
             seen = f"the heading '{shown(names.texts[place])}' has another unit below it, '{shown(its_unit)}'"
-            raise InputError(seen, 'Write the right one as unit = "..." in the section file, or take one out.', file)
+            advice = 'Write the right one as unit = "..." in the section file, or take one out.'
+            raise InputError(seen, advice, f"{file}:{number}")
         found.append((place, its_unit or above))
     return replace(names, line=number, found=tuple(found), units=texts, units_below=number - names.line)
 

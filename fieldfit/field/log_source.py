@@ -18,6 +18,7 @@ ENCODINGS = {"utf-8": "UTF-8", "utf-8-sig": "UTF-8", "cp1252": "Windows-1252"}
 
 _BLOCK = 1 << 20
 _MARKS = {b"\xff\xfe": "utf-16", b"\xfe\xff": "utf-16", b"\xef\xbb": "utf-8-sig"}
+_UTF_32 = (b"\xff\xfe\0\0", b"\0\0\xfe\xff")
 _UTF_8 = b"\xef\xbb\xbf"
 _LINE_ENDS = (b"\n", b"\r")
 
@@ -135,6 +136,8 @@ def _encoding(head: bytes, file: str) -> str:
     """Return the encoding that the first bytes show; UTF-8 is only a guess."""
     if not head.removeprefix(_UTF_8).strip(b" \t\r\n\0"):
         raise InputError("the log is empty", "Export it again.", file)
+    if head[:4] in _UTF_32:
+        raise InputError("the file is UTF-32 text", 'Save it as UTF-8 text; spreadsheets call it "CSV UTF-8".', file)
     if head[:2] in _MARKS and (head[:2] != _UTF_8[:2] or head[:3] == _UTF_8):
         return _MARKS[head[:2]]
     pairs = head[: len(head) // 2 * 2][:4096]

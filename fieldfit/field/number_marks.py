@@ -122,7 +122,7 @@ def no_number(text: str, where: str, marks: Iterable[str]) -> InputError:
     marks : iterable of str
         Some of what may stand for a missing value.
     """
-    if _HAS_COMMA.fullmatch(text.strip()):
+    if _HAS_COMMA.fullmatch(text.strip()) or _fits(text.strip(), ".") or _fits(text.strip(), ","):
         seen = f"'{shown(text)}' does not fit the decimal mark of the other numbers"
         return InputError(seen, ADVICE, where)
     listed = ", ".join(f"'{mark}'" for mark in marks)

@@ -73,6 +73,10 @@ def si_values(
         if column.signal is not None:
             faulty = _faulty(column, raw)
             faults |= faulty
+            if np.all(faulty | np.isnan(raw)):
+                lowest, highest = column.signal.sound
+                seen = f"every signal is under {lowest:g} or over {highest:g} {column.signal.quantity}"
+                raise InputError(seen, "Check signal and range in the section file, and the wiring.", where)
             raw = np.where(faulty, np.nan, raw)
         try:
             si, steps[name] = _si(column, raw, time_s, section, said)

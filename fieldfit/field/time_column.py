@@ -93,7 +93,7 @@ def find_time(headings: Headings, first_row: Sequence[str], said: list[str], whe
         places = [place for place, (name, _) in enumerate(names) if name == wanted]
         counts = all(names[place][1] for place in places)
         if places and (counts or wanted not in COUNTED_NAMES or _is_number(first_row, places[0])):
-            return _clock_at(_only(places, headings, where), headings, first_row, dates)
+            return _clock_at(_only(places, headings, where), headings, first_row, dates, where)
     open_ones = range(len(texts))
     stamped = [place for place, field in enumerate(first_row[: len(names)]) if place in open_ones and is_stamp(field)]
     stamped = [place for place in stamped if place not in taken]
@@ -110,7 +110,9 @@ def _is_number(row: Sequence[str], place: int) -> bool:
     return place < len(row) and re.fullmatch(r"[0-9]*[.,]?[0-9]+", row[place]) is not None
 
 
-def _clock_at(place: int, headings: Headings, first_row: Sequence[str], dates: list[int]) -> TimeColumn | None:
+def _clock_at(
+    place: int, headings: Headings, first_row: Sequence[str], dates: list[int], where: str
+) -> TimeColumn | None:
     """Return the clock in a column that is called so; None where it holds days only."""
     name, its_unit = _name_and_unit(headings.with_unit(place))
     if its_unit is None and name in COUNTED_NAMES:
@@ -118,7 +120,7 @@ def _clock_at(place: int, headings: Headings, first_row: Sequence[str], dates: l
     field = first_row[place] if place < len(first_row) else ""
     if is_day_only(field):
         return None
-    beside = dates[0] if dates and not is_stamp(field) and not its_unit else None
+    beside = _only(dates, headings, where, "dates") if dates and not is_stamp(field) and not its_unit else None
     return _column(place, headings, its_unit, beside)
 
 
@@ -163,11 +165,13 @@ def _fold(text: str) -> str:
     return " ".join(bare.replace("_", " ").casefold().split())
 
 
-def _only(places: list[int], headings: Headings, where: str) -> int:
+def _only(places: list[int], headings: Headings, where: str, what: str = "the clock") -> int:
     """Return the one place there is."""
     if len(places) > 1:
         names = " and ".join(f"'{shown(headings.texts[place])}'" for place in places[:2])
         raise InputError(
-            f"{names} may both be the clock", "Name the right one 'time' and the other one otherwise.", where
+            f"{names} may both be {what}",
+            f"Name the right one '{'date' if what == 'dates' else 'time'}' and the other one otherwise.",
+            where,
         )
     return places[0]

@@ -14,7 +14,7 @@ from fieldfit.field.section_file import read_section
 BAD = Path(__file__).parent / "bad"
 MESSAGES = tomllib.loads((BAD / "messages.toml").read_text(encoding="utf-8"))
 SECTIONS = sorted(BAD.glob("sections/*.toml"))
-LOGS = sorted(BAD.glob("logs/*.csv"))
+LOGS = sorted(BAD.glob("logs/*"))
 
 
 @pytest.fixture(scope="module")
@@ -27,6 +27,11 @@ def test_every_sin_has_its_message():
     assert {path.stem for path in LOGS} == set(MESSAGES["logs"])
 
 
+def test_the_gallery_is_large_enough():
+    assert len(LOGS) >= 60
+    assert {path.stem for path in BAD.glob("log_sections/*")} <= {path.stem for path in LOGS}
+
+
 @pytest.mark.parametrize("path", SECTIONS, ids=lambda path: path.stem)
 def test_bad_section_file(path):
     with pytest.raises(InputError) as caught:
@@ -36,6 +41,8 @@ def test_bad_section_file(path):
 
 @pytest.mark.parametrize("path", LOGS, ids=lambda path: path.stem)
 def test_bad_log(path, section):
+    own = BAD / "log_sections" / f"{path.stem}.toml"
+    section = read_section(own) if own.exists() else section
     with pytest.raises(InputError) as caught:
         read_log(path, section)
     assert str(caught.value).startswith(MESSAGES["logs"][path.stem])
