@@ -15,6 +15,7 @@ from fieldfit.errors import InputError
 from fieldfit.field.campaign_files import gather_parts, read_campaign_log
 from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
 from fieldfit.field.log import Log
+from fieldfit.field.long_log import open_long_log, read_long_log
 from fieldfit.field.plateaus import screen, set_plateaus_aside, summarise
 from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.reaches import reach_readings
@@ -26,6 +27,7 @@ from fieldfit.field.section_outlook import section_on
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 from fieldfit.inference.estimate import estimate
 from fieldfit.inference.explanations import explain, new_roughness
+from fieldfit.progress import tell
 from fieldfit.report.cautions import cautions
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.survey_cautions import survey_cautions
@@ -99,6 +101,9 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
 
 def read_campaign(section: Section, path: Path) -> tuple[Log, Screening, Plateaus]:
     """Read one log and part its rows into plateaus and rows set aside: what screening and assessing begin with."""
+    long = open_long_log(path, section)
+    if long is not None:
+        return read_long_log(long, _weight(section), lambda share: tell(f"Reading {path.name}", share))
     log = read_campaign_log(path, section)
     bridged, dead = bridge_dead_taps(log, section)
     screening = screen(bridged, section)

@@ -13,6 +13,7 @@ import typer
 
 from fieldfit import __version__
 from fieldfit.errors import InputError
+from fieldfit.progress import bar_on_terminal
 
 app = typer.Typer(
     add_completion=False,
@@ -202,7 +203,8 @@ def main(argv: list[str] | None = None) -> int:
             # A terminal that lacks a letter of a name shows a question mark instead.
             stream.reconfigure(errors="replace")
     try:
-        app(args=sys.argv[1:] if argv is None else argv, prog_name="fieldfit")
+        with bar_on_terminal():
+            app(args=sys.argv[1:] if argv is None else argv, prog_name="fieldfit")
     except InputError as error:
         typer.echo(f"{error}", err=True)
         return BAD_INPUT

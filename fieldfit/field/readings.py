@@ -31,6 +31,11 @@ class Screening:
     """What became of every row of a log too long to keep them all, of which the rows here are some; else None."""
 
     @property
+    def rows(self) -> int:
+        """Number of rows of the log."""
+        return len(self.reason) if self.runs is None else self.runs.total
+
+    @property
     def used(self) -> int:
         """Number of rows used."""
         return int(np.count_nonzero(self.plateau)) if self.runs is None else self.runs.used

@@ -12,6 +12,7 @@ from pathlib import Path
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.row_runs import RowRuns
 from fieldfit.field.section import Section
 from fieldfit.report.finding import ScreenedLog
 
@@ -20,6 +21,8 @@ LAST_HEADINGS = ("plateau", "set aside because")
 
 def audit_csv(campaign: ScreenedLog, section: Section) -> str:
     """Return all rows of a log as CSV: readings in SI units, plateau, and why a row was set aside.
+
+    Of a log too long to keep all rows it is one line for each run of rows with one fate.
 
     Parameters
     ----------
@@ -34,6 +37,8 @@ def audit_csv(campaign: ScreenedLog, section: Section) -> str:
         One heading line and one line per row; a missing value is empty, as is the reason of a row that is used.
     """
     log, screening = campaign.log, campaign.screening
+    if screening.runs is not None:
+        return _written(*_of_runs(screening.runs, log.start))
     timed = log.kind == "logger"
     headings = ["line", *(["time" if log.start else "time [s]"] if timed else []), f"{section.meter.column} [m3/s]"]
     columns: list[Iterable[str]] = [map(str, log.line.tolist())]
@@ -48,6 +53,27 @@ def audit_csv(campaign: ScreenedLog, section: Section) -> str:
         columns.append(_numbers(log.temperature_degc))
     headings += LAST_HEADINGS
     columns += [(str(n) if n else "" for n in screening.plateau.tolist()), screening.reason.tolist()]
+    return _written(headings, columns)
+
+
+def _of_runs(runs: RowRuns, start: dt.datetime | None) -> tuple[list[str], list[Iterable[str]]]:
+    """Return headings and columns for runs of rows; `rows` is less than the lines where other runs lie between."""
+    time = "time" if start else "time [s]"
+    headings = ["first line", "last line", f"first {time}", f"last {time}", "rows", *LAST_HEADINGS]
+    columns: list[Iterable[str]] = [
+        map(str, runs.first_line.tolist()),
+        map(str, runs.last_line.tolist()),
+        _times(start, runs.first_s),
+        _times(start, runs.last_s),
+        map(str, runs.rows.tolist()),
+        (str(n) if n else "" for n in runs.plateau.tolist()),
+        runs.reason.tolist(),
+    ]
+    return headings, columns
+
+
+def _written(headings: list[str], columns: list[Iterable[str]]) -> str:
+    """Return a table as CSV."""
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow(headings)

@@ -8,6 +8,11 @@ from fieldfit.report.cautions import SCATTER
 from fieldfit.report.digits import litres, percent, significant, value_with_band
 from fieldfit.report.finding import ReachFinding, ScreenedLog
 
+LONG_LOG = (
+    "Of a log so long the drawing shows the extremes of many short windows, and the file of its rows has one line for "
+    "each run of rows with one fate. The results stand on every row."
+)
+
 
 def head_loss(reach: ReachFinding) -> str:
     """Say how the readings lie against the fit and new pipe."""
@@ -83,7 +88,9 @@ def budget(reach: ReachFinding) -> str:
 
 def rows(campaign: ScreenedLog) -> str:
     """Say how much of the log is used."""
-    used, total = campaign.screening.used, campaign.log.line.size
+    used, total = campaign.screening.used, campaign.log.rows
+    thinned = "" if campaign.screening.runs is None else f" {LONG_LOG}"
     if used == total:
-        return f"All {total} rows are used."
-    return f"{used} of {total} rows are used; the lanes below show where the others lie and why they were set aside."
+        return f"All {total} rows are used.{thinned}"
+    lanes = "the lanes below show where the others lie and why they were set aside."
+    return f"{used} of {total} rows are used; {lanes}{thinned}"

@@ -169,7 +169,7 @@ def _against_new(reach: ReachFinding, section: Section) -> Iterator[Caution]:
 
 def _of_log(section: Section, log: Log, screening: Screening, plateaus: Plateaus) -> Iterator[Caution]:
     """Check the log itself."""
-    rows = len(log.reason)
+    rows = log.rows
     aside = rows - screening.used
     if aside > SET_ASIDE_SHARE * rows:
         reasons = ", ".join(f"{why} {count}" for why, count in screening.counts)

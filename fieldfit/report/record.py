@@ -84,7 +84,7 @@ def _campaign(campaign: CampaignFinding) -> Record:
         "log": {
             "file": campaign.log.file,
             "sha256": campaign.log.sha256,
-            "rows": int(campaign.log.line.size),
+            "rows": campaign.log.rows,
             "used": campaign.screening.used,
             "set_aside": {reason: int(count) for reason, count in campaign.screening.counts},
         },

@@ -104,7 +104,7 @@ def _roughness(reach: ReachFinding) -> list[str]:
 
 
 def _campaign(campaign: CampaignFinding) -> list[str]:
-    screening, total = campaign.screening, campaign.log.line.size
+    screening, total = campaign.screening, campaign.log.rows
     aside = ", ".join(f"{count} {reason}" for reason, count in screening.counts)
     lines = folded("rows", f"{screening.used} of {total} used" + (f"; set aside: {aside}" if aside else ""))
     count = len(campaign.cautions)

@@ -5,8 +5,6 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 
-import numpy as np
-
 from fieldfit.field.reaches import ReachHeads
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section, Tap
@@ -172,9 +170,8 @@ def _budget_row(entry: BudgetEntry) -> Row:
 
 def rows(campaign: ScreenedLog) -> Table:
     """Return how many rows were used, and how many set aside for which reason."""
-    total, screening = campaign.log.line.size, campaign.screening
-    still = np.isin(screening.plateau, campaign.plateaus.number[campaign.plateaus.static]) & (screening.plateau > 0)
-    at_rest = int(np.count_nonzero(still))
+    total, screening = campaign.log.rows, campaign.screening
+    at_rest = screening.rows_of(campaign.plateaus.number[campaign.plateaus.static])
     counted = [
         ("used, water flowing", screening.used - at_rest),
         ("used, at rest", at_rest),

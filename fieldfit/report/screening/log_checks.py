@@ -55,7 +55,7 @@ def log_checks(
 
 def _aside(screening: Screening) -> Check:
     """Look at the share of rows set aside."""
-    rows = len(screening.reason)
+    rows = screening.rows
     aside = rows - screening.used
     share = aside / rows
     first = screening.counts[0][0] if screening.counts else ""
@@ -76,7 +76,7 @@ def _aside(screening: Screening) -> Check:
 def _faults(screening: Screening) -> Check:
     """Look at the share of rows that instruments or logger have spoilt."""
     faults = [(reason, number) for reason, number in screening.counts if reason in FAULTS]
-    share = sum(number for _, number in faults) / len(screening.reason)
+    share = sum(number for _, number in faults) / screening.rows
     listed = ", ".join(f"{number} {reason}" for reason, number in faults)
     return Check(
         what="Share of rows with a fault",
