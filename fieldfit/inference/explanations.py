@@ -13,6 +13,7 @@ from fieldfit.field.section import Correlation
 from fieldfit.inference.beliefs import NOTHING
 from fieldfit.inference.causes import Hypothesis, hypotheses, together
 from fieldfit.inference.conditions import Conditions, conditions_of, noise_of, pooled
+from fieldfit.inference.fault_model import WALL
 from fieldfit.inference.telling_apart import Action, actions, alike, named
 from fieldfit.inference.weighing import Fitted, Size, Weighed, weigh
 
@@ -219,9 +220,8 @@ def _explanation(one: Weighed, probability: float, conditions: Conditions) -> Ex
 def _strain(one: Weighed, conditions: Conditions) -> tuple[str, float] | None:
     """Return the stated error that a hypothesis moves furthest, if far."""
     free = len(one.fitted.u) - len(conditions.names) - len(conditions.correlation)
-    names = [*conditions.names, *["friction correlation"] * len(conditions.correlation)]
-    pulls = one.fitted.u[free:]
-    most = int(np.argmax(np.abs(pulls))) if pulls.size else 0
-    if not pulls.size or abs(pulls[most]) < PULLED:
-        return None
-    return names[most], float(pulls[most])
+    names = ["wall as new", *conditions.names, *["friction correlation"] * len(conditions.correlation)]
+    wall = 0.0 if "rough wall" in one.causes else one.fitted.u[WALL]
+    pulls = np.append(wall, one.fitted.u[free:])
+    most = int(np.argmax(np.abs(pulls)))
+    return (names[most], float(pulls[most])) if abs(pulls[most]) >= PULLED else None

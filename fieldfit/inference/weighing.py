@@ -21,6 +21,12 @@ TOO_MUCH = 3.0
 """Reduced χ² that the misfit must exceed as well [-]: stated noise is itself only known to a factor of that kind."""
 
 
+NEARLY, MOST_OPTIONS = 0.2, 3
+"""Share of the best one's probability from which another discrete fault is named too [-], and how many are."""
+PULLED_FAR = 3.5
+"""Standard deviations beyond which no stated error, nor a wall as new, may be strained by a cause that explains [-]."""
+
+
 class Size(NamedTuple):
     """How large a cause would be."""
 
@@ -88,6 +94,8 @@ class Weighed:
     """Logarithm of the prior probability [-]."""
     chi_square: float
     """Misfit at the best trial: readings and stated errors together [-]."""
+    pull: float
+    """Largest strain on a stated error, or on the wall as new [its standard deviations]."""
     freedom: int
     """Readings less free sizes, at least one."""
     misfit: Array
@@ -104,6 +112,8 @@ class Weighed:
         """Whether stated errors and noise could have made this misfit."""
         from scipy.special import gammaincc
 
+        if self.pull > PULLED_FAR:
+            return False
         reduced = self.chi_square / self.freedom
         chance = float(gammaincc(self.freedom / 2.0, self.chi_square / 2.0))
         return bool(reduced <= TOO_MUCH or chance >= TOO_FAR)
@@ -170,6 +180,7 @@ def _weighed(
         ln_weight=float(np.max(score) + np.log(np.sum(weight))),
         ln_prior=float(np.log(np.sum(np.exp(one.trials.ln_weight)))),
         chi_square=float(misfit @ misfit + stated @ stated),
+        pull=float(np.max(np.abs(stated), initial=0.0)),
         freedom=max(len(misfit) - len(free), 1),
         misfit=misfit,
         fitted=Fitted(trial=trials.take(np.array([best])), flow_m3_s=flow, u=u, covariance=at_best),
@@ -177,8 +188,16 @@ def _weighed(
             _size(int(column), trials.take(heavy), found.u[heavy], (weight[weight > 1e-3], covariance))
             for column in free
         ),
-        option=one.options[int(np.argmax(score))] if one.options else "",
+        option=_options(one.options, weight),
     )
+
+
+def _options(names: tuple[str, ...], weight: Array) -> str:
+    """Return the most probable of several discrete faults, and those nearly as probable."""
+    if not names:
+        return ""
+    order = [index for index in np.argsort(-weight) if weight[index] >= NEARLY][:MOST_OPTIONS]
+    return "; or ".join(dict.fromkeys(names[index] for index in order))
 
 
 def _size(column: int, trials: Trials, u: Array, parts: tuple[Array, Array]) -> Size:
