@@ -197,19 +197,22 @@ def _check_overlap(parts: list[LoggerPart], clocks: Clocks, found: tuple[LoggerC
     """Refuse clocks that had to be taken as equal and cannot be."""
     first, last = _common(parts, clocks.lag_s)
     guessed = [one for one in found if one.how == "taken as equal"]
-    advice = (
-        'Say how far its clock is ahead of the others: [[logger]] file = "' + (guessed or [found[0]])[0].file
-    ) + '", offset = "+3600 s".'
     if guessed and not dated:
         seen = f"the clock does not know the day, and the readings cannot tell how far it is off ({guessed[0].because})"
-        raise InputError(seen, advice, guessed[0].file)
+        raise InputError(seen, _say_offset(guessed[0]), guessed[0].file)
     if last <= first:
         why = f", and the readings cannot tell how far their clocks are apart ({guessed[0].because})" if guessed else ""
+        advice = _say_offset((guessed or list(found))[0])
         raise InputError(f"the logs have no time in common{why}", advice, ", ".join(one.file for one in found))
     for one in guessed:
         if _contradicted(one):
             seen = f"with clocks as they stand the readings do not fit together, and {one.because}"
-            raise InputError(seen, advice, one.file)
+            raise InputError(seen, _say_offset(one), one.file)
+
+
+def _say_offset(clock: LoggerClock) -> str:
+    """Return how an offset is stated."""
+    return f'Say how far its clock is ahead of the others: [[logger]] file = "{clock.file}", offset = "+3600 s".'
 
 
 def _contradicted(clock: LoggerClock) -> bool:

@@ -2,40 +2,35 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
-from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.field.lag_interval import LagInterval, covariance, lag_interval
+from fieldfit.field.lag_fit import LONG_S, ClockFit, Free, fit_clocks, leftover, look_around
+from fieldfit.field.lag_interval import LagInterval, lag_interval
 from fieldfit.field.lag_search import dearer, rough_lags
-from fieldfit.field.signals import Clocks, Grid, Signals
+from fieldfit.field.signals import Clocks, Signals
 
 Array = NDArray[np.float64]
 
-LONG_S = 4.0 * 3600.0
-"""Length of a log from which clocks may drift apart visibly [s]."""
-DRIFT_SEEN = 2.5
-"""Standard uncertainties a drift must be to be believed."""
 WIDEST_SHARE = 0.05
 """Half an interval over the log's length beyond which it says nothing of the lag."""
 WIDEST_ROWS = 6.0
 """Sampling intervals within which half an interval is good enough all the same."""
 AMBIGUOUS = 9.0
 """Fall of the log-likelihood, twice over, by which one lag must beat every other."""
-FIT_SD = 6.0
-"""Robust standard deviations from which a row is no part of the comparison."""
 RESPONSE = 0.1
 """Share of the sampling interval to which a row's time can be trusted."""
-BLUR = 0.25
-"""Share of the blur of lines between readings to which it can be known."""
+APART = 6.0
+"""Windows from the best lag within which another is none, but the same."""
+BETTER = 0.8
+"""Share of what the best fit leaves over below which another lag is clearly better."""
+RESTARTS = 4
+"""Fits from ever better lags."""
 RIVALS = 3
 """Other valleys of the rough search that are looked at closely."""
-ROUNDS = 15
-NARROW = 2.0
-"""Width of the finest window, in sampling intervals of the slowest channel."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -60,45 +55,17 @@ class Lag:
     """Every lag searched [s], and the share of the channels' variance left over at each [-]."""
 
 
-class _Free(NamedTuple):
-    """What is to be found: which loggers, and whether their clocks may drift."""
-
-    places: list[int]
-    drifting: bool
-
-    def clocks(self, clocks: Clocks, theta: Array) -> Clocks:
-        """Return the clocks with the free ones at these parameters: lags, then drifts."""
-        lag, drift, count = clocks.lag_s.copy(), clocks.drift.copy(), len(self.places)
-        lag[self.places] = theta[:count]
-        if self.drifting:
-            drift[self.places] = theta[count:]
-        return replace(clocks, lag_s=lag, drift=drift)
-
-    def theta(self, clocks: Clocks) -> Array:
-        """Return the parameters of the clocks."""
-        return np.concatenate([clocks.lag_s[self.places], clocks.drift[self.places] if self.drifting else []])
-
-
-class _Fit(NamedTuple):
-    """The free clocks at their best."""
-
-    clocks: Clocks
-    grid: Grid
-    slopes: Array
-    variance: Array
-
-
 def recover_lags(
     signals: Signals, known: Sequence[float | None], drifts: Sequence[float | None] | None = None
 ) -> tuple[Lag, ...]:
     """Find how far each logger's clock is ahead, from the one head-loss equation that all channels must obey.
 
-    The pressure difference of each reach, its rigid-column inertia taken off, is held against Q|Q|, Q, a constant and
-    a slow drift of the gauges; clocks are right where the least variance is left over. A rough search takes every
-    lag at which half of the shorter log still overlaps, so a whole hour is found as well as seconds; the fine one is
-    Gauss–Newton on windows of two rows. The interval is where the residual variance has risen by what the effective
-    number of rows allows: rows that remember one another, and the few moments at which the flow changes, count for
-    what they are. The time of a pressure wave between the taps widens it.
+    The pressure difference of each reach, its rigid-column inertia taken off, is held against a constant and friction
+    between the powers 1.75 and 2 of the flow; clocks are right where the least variance is left over. A rough search
+    takes every lag at which half of the shorter log still overlaps, so a whole hour is found as well as seconds; the
+    fine one is Gauss–Newton on windows of two rows. The interval is where the residual variance has risen by what the
+    effective number of rows allows: rows that remember one another, and the few moments at which the flow changes,
+    count for what they are. The time of a pressure wave between the taps widens it.
 
     Parameters
     ----------
@@ -126,112 +93,10 @@ def recover_lags(
     clocks = Clocks(lag_s=np.array(search.seconds), drift=np.array(given))
     first, last = signals.overlap(clocks)
     may_drift = last - first >= LONG_S and (drifts is None or all(drifts[place] is None for place in places))
-    start = replace(clocks, middle_s=(first + last) / 2.0)
-    fit, free, spread = _fine(signals, start, _Free(places, may_drift), last - first)
-    for index, place in enumerate(places):
-        interval = lag_interval(_leftover(signals, fit, free), free.theta(fit.clocks), index, (fit.variance, fit.grid))
-        rival = _rival(signals, fit, place, (search.curves[place], interval.independent_rows))
-        found[place] = replace(
-            _judged(signals, interval, search.curves[place], rival),
-            drift=float(fit.clocks.drift[place]),
-            drift_standard=spread[index] if spread else None,
-        )
+    fitted = _best_fit(signals, clocks, Free(places, may_drift), search.curves)
+    for place, lag in _judge_all(signals, fitted, search.curves).items():
+        found[place] = lag
     return tuple(found)
-
-
-def _fine(signals: Signals, clocks: Clocks, free: _Free, length: float) -> tuple[_Fit, _Free, list[float]]:
-    """Refine the free clocks on ever narrower windows; a drift stays only where it is seen."""
-    widths = [NARROW * signals.interval_s]
-    while widths[-1] < length / 500.0:
-        widths.append(4.0 * widths[-1])
-    for width in reversed(widths):
-        fit = _converge(signals, clocks, free, width)
-        clocks = fit.clocks
-    if not free.drifting:
-        return fit, free, []
-    count = len(free.places)
-    spread = np.sqrt(np.diag(fit.variance)[count:])
-    if np.all(np.abs(free.theta(clocks)[count:]) < DRIFT_SEEN * spread):
-        free = _Free(free.places, False)
-        steady = clocks.drift.copy()
-        steady[free.places] = 0.0
-        fit = _converge(signals, replace(clocks, drift=steady), free, widths[0])
-    return fit, free, spread.tolist()
-
-
-def _leftover(signals: Signals, fit: _Fit, free: _Free) -> Callable[[Array], Array]:
-    """Return the residual as a function of the free parameters."""
-    return lambda theta: signals.residual(free.clocks(fit.clocks, theta), fit.grid)
-
-
-def _converge(signals: Signals, clocks: Clocks, free: _Free, width: float) -> _Fit:
-    """Minimise the residual variance at one width of window: a look around, then Gauss–Newton without outliers."""
-    grid = signals.grid(clocks, width)
-    theta = free.theta(clocks)
-    half = max((grid.time_s[-1] - grid.time_s[0]) / 2.0, width)
-    size = np.concatenate([np.full(len(free.places), width), np.full(len(theta) - len(free.places), width / half)])
-
-    def residual(at: Array) -> Array:
-        return signals.residual(free.clocks(clocks, at), grid)
-
-    for index in range(len(free.places)):
-        theta = _look_around(residual, theta, index, width)
-    theta, slopes = _gauss_newton(residual, theta, size)
-    left = residual(theta)
-    spread = 1.4826 * np.array([np.median(np.abs(one[keep])) for one, keep in zip(left, grid.keep, strict=True)])
-    near = np.abs(left) <= np.maximum(FIT_SD * spread[:, None], 1e-9)
-    grid = replace(grid, keep=grid.keep & near)
-    theta, slopes = _gauss_newton(residual, theta, size)
-    variance = covariance(residual(theta), slopes, grid.keep) + _blurred(signals, residual, theta, slopes)
-    return _Fit(free.clocks(clocks, theta), grid, slopes, variance)
-
-
-def _blurred(signals: Signals, residual: Callable[[Array], Array], theta: Array, slopes: Array) -> Array:
-    """Return the covariance that comes of not knowing quite how a logger blurs what it samples."""
-    flat = slopes.reshape(len(theta), -1)
-    inverse = np.linalg.pinv(flat @ flat.T)
-    middle, whole = residual(theta), np.zeros((len(theta), len(theta)))
-    for index in range(len(theta)):
-        step = np.zeros_like(theta)
-        step[index] = signals.interval_s
-        bend = (residual(theta + step) + residual(theta - step) - 2.0 * middle) / 6.0
-        moved = inverse @ (flat @ (BLUR * bend).ravel())
-        whole += np.outer(moved, moved)
-    return whole
-
-
-def _look_around(residual: Callable[[Array], Array], theta: Array, index: int, width: float) -> Array:
-    """Return the best of a few lags about the present one."""
-    tries = []
-    for step in np.linspace(-2.0, 2.0, 17) * width:
-        at = theta.copy()
-        at[index] += step
-        tries.append((float(np.sum(residual(at) ** 2)), at))
-    return min(tries, key=lambda one: one[0])[1]
-
-
-def _gauss_newton(residual: Callable[[Array], Array], theta: Array, size: Array) -> tuple[Array, Array]:
-    """Return parameters of least squares, and the (P, R, n) slopes of the residual there."""
-    for _ in range(ROUNDS):
-        slopes = _slopes(residual, theta, size)
-        flat = slopes.reshape(len(theta), -1)
-        step = -np.linalg.lstsq(flat.T, residual(theta).ravel(), rcond=None)[0]
-        step = step / max(1.0, float(np.max(np.abs(step) / size)))
-        theta = theta + step
-        if np.all(np.abs(step) < 1e-4 * size):
-            break
-    return theta, _slopes(residual, theta, size)
-
-
-def _slopes(residual: Callable[[Array], Array], theta: Array, size: Array) -> Array:
-    """Return how the residual changes with each parameter, (P, R, n)."""
-    found = []
-    for index, width in enumerate(size):
-        ahead, behind = theta.copy(), theta.copy()
-        ahead[index] += width / 4.0
-        behind[index] -= width / 4.0
-        found.append((residual(ahead) - residual(behind)) / (width / 2.0))
-    return np.array(found)
 
 
 def _judged(signals: Signals, interval: LagInterval, search: tuple[Array, Array], rival: float | None) -> Lag:
@@ -257,41 +122,81 @@ def _judged(signals: Signals, interval: LagInterval, search: tuple[Array, Array]
     )
 
 
-def _rival(signals: Signals, fit: _Fit, place: int, search: tuple[tuple[Array, Array], float]) -> float | None:
-    """Return a lag out of the best one's valley that fits as well; None where there is none."""
-    (lags, share), rows = search
-    rows = max(rows, 4.0)
-    # Another lag lays other rows over one another, and a variance of so many rows is itself not sure.
-    rise = float(np.exp(AMBIGUOUS / rows + 2.0 * np.sqrt(2.0 / rows)))
-    allowed = rise * signals.unexplained(fit.clocks, fit.grid)
-    for lag in _valleys(lags, share, fit.clocks.lag_s[place])[:RIVALS]:
-        if _closely(signals, fit, place, lag) <= allowed:
-            return lag
-    return None
+def _judge_all(
+    signals: Signals, fitted: tuple[ClockFit, Free, list[float]], curves: Sequence[tuple[Array, Array]]
+) -> dict[int, Lag]:
+    """Return each free lag with its interval, or with the reason why it cannot be told."""
+    fit, free, spread = fitted
+    found = {}
+    for index, place in enumerate(free.places):
+        interval = lag_interval(leftover(signals, fit, free), free.theta(fit.clocks), index, (fit.variance, fit.grid))
+        rows = max(interval.independent_rows, 4.0)
+        # Another lag lays other rows over one another, and a variance of so many rows is itself not sure.
+        rise = float(np.exp(AMBIGUOUS / rows + 2.0 * np.sqrt(2.0 / rows)))
+        allowed = rise * signals.unexplained(fit.clocks, fit.grid)
+        rival = next((lag for lag, left in _rivals(signals, fit, place, curves[place]) if left <= allowed), None)
+        found[place] = replace(
+            _judged(signals, interval, curves[place], rival),
+            drift=float(fit.clocks.drift[place]),
+            drift_standard=spread[index] if spread else None,
+        )
+    return found
 
 
-def _closely(signals: Signals, fit: _Fit, place: int, lag: float) -> float:
-    """Return the share of variance left over at the best lag near one of the rough search, held against the overlap."""
-    alone = _Free([place], False)
-    theta = np.array([lag])
+def _best_fit(
+    signals: Signals, clocks: Clocks, free: Free, curves: Sequence[tuple[Array, Array]]
+) -> tuple[ClockFit, Free, list[float]]:
+    """Fit the clocks, and again from any lag of the rough search that turns out to be clearly better."""
+    first, last = signals.overlap(clocks)
+    for _ in range(RESTARTS):
+        start = replace(clocks, middle_s=(first + last) / 2.0)
+        fit, kept, spread = fit_clocks(signals, start, free, last - first)
+        left = signals.unexplained(fit.clocks, fit.grid)
+        better = [
+            (share, place, lag)
+            for place in free.places
+            for lag, share in _rivals(signals, fit, place, curves[place])
+            if share < BETTER * left
+        ]
+        if not better:
+            break
+        lags = fit.clocks.lag_s.copy()
+        _, place, lags[place] = min(better)
+        clocks = replace(clocks, lag_s=lags)
+    return fit, kept, spread
+
+
+def _rivals(signals: Signals, fit: ClockFit, place: int, curve: tuple[Array, Array]) -> Iterator[tuple[float, float]]:
+    """Yield lags out of the best one's valley, with the share of variance that each leaves over at a close look."""
+    near = APART * fit.grid.width_s
+    for rough in _valleys(*curve, (float(fit.clocks.lag_s[place]), near))[:RIVALS]:
+        lag, left = _closely(signals, fit, place, rough)
+        if abs(lag - fit.clocks.lag_s[place]) > near / 2.0:
+            yield lag, left
+
+
+def _closely(signals: Signals, fit: ClockFit, place: int, rough: float) -> tuple[float, float]:
+    """Return the best lag near one of the rough search, with what it leaves over, held against the overlap."""
+    alone = Free([place], False)
+    theta = np.array([rough])
     at = alone.clocks(fit.clocks, theta)
     grid = signals.grid(at, fit.grid.width_s)
     if not np.any(grid.keep):
-        return float("inf")
+        return rough, float("inf")
 
     def residual(one: Array) -> Array:
         return signals.residual(alone.clocks(at, one), grid)
 
     for _ in range(2):
-        theta = _look_around(residual, theta, 0, grid.width_s)
+        theta = look_around(residual, theta, 0, grid.width_s)
     common = float(np.count_nonzero(grid.keep)) / max(float(np.count_nonzero(fit.grid.keep)), 1.0)
-    return signals.unexplained(alone.clocks(at, theta), grid) * dearer(common)
+    return float(theta[0]), signals.unexplained(alone.clocks(at, theta), grid) * dearer(common)
 
 
-def _valleys(lags: Array, share: Array, best: float) -> list[float]:
-    """Return the lags at which the rough share has a low of its own, deepest first, without the best one's."""
+def _valleys(lags: Array, share: Array, but: tuple[float, float]) -> list[float]:
+    """Return the lags at which the rough share has a low of its own, deepest first, but those near the best one."""
     padded = np.concatenate([[np.inf], share, [np.inf]])
     low = np.flatnonzero((share <= padded[:-2]) & (share <= padded[2:]))
     step = lags[1] - lags[0] if len(lags) > 1 else 1.0
-    low = low[np.abs(lags[low] - best) > 2.5 * step]
+    low = low[np.abs(lags[low] - but[0]) > max(2.5 * step, but[1])]
     return [float(lags[one]) for one in low[np.argsort(share[low])]]

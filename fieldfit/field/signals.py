@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.field.track import Track
+from fieldfit.field.track import Track, track
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
@@ -62,6 +62,13 @@ class Signals:
     """(R,) density × length / area of each reach [Pa s²/m³]."""
     travel_s: float = 0.0
     """Longest time a pressure wave needs between neighbouring taps [s]."""
+    gentle: Track = field(init=False)
+    """Flow to the power 1.75, with its sign: friction of a smooth wall, where `square` is that of a rough one."""
+
+    def __post_init__(self) -> None:
+        """Work out the other end of the friction law."""
+        flow = self.flow.value
+        object.__setattr__(self, "gentle", track(self.flow.time_s, flow * np.abs(flow) ** 0.75))
 
     @property
     def count(self) -> int:
@@ -102,18 +109,17 @@ class Signals:
         """
         on = [clocks.own(logger, grid.time_s) for logger in self.loggers]
         width = self._width(self.flow, grid.width_s)
-        square, flow = self.square.mean(on[0], width), self.flow.mean(on[0], width)
+        square, gentle = self.square.mean(on[0], width), self.gentle.mean(on[0], width)
         change = self.flow.slope(on[0], width)
         pressure = [one.mean(on[1 + tap], self._width(one, grid.width_s)) for tap, one in enumerate(self.pressures)]
-        explains = np.array([np.ones_like(flow), square, flow, grid.time_s - grid.time_s[0]])
+        explains = np.array([np.ones_like(square), square, gentle])
         explains = explains / np.maximum(np.max(np.abs(explains), axis=1, keepdims=True), 1e-300)
-        left = np.zeros((len(self.inertia), len(flow)))
+        left = np.zeros((len(self.inertia), len(square)))
         for reach, taps in enumerate(self._taps()):
             keep = grid.keep[reach]
             difference = pressure[taps[0] - 1] - (pressure[taps[1] - 1] if len(taps) > 1 else 0.0)
             difference = (difference - self.inertia[reach] * change)[keep]
-            known = explains[:, keep].T
-            left[reach, keep] = difference - known @ np.linalg.lstsq(known, difference, rcond=None)[0]
+            left[reach, keep] = _unexplained(explains[:, keep].T, difference)
         return left
 
     def unexplained(self, clocks: Clocks, grid: Grid) -> float:
@@ -141,3 +147,20 @@ class Signals:
         if len(self.pressures) == 1:
             return [(1,)]
         return [(tap, tap + 1) for tap in range(1, len(self.pressures))]
+
+
+def _unexplained(explains: Array, difference: Array) -> Array:
+    """Return what is left of a pressure difference after a constant and friction.
+
+    Friction goes with a power of the flow between 1.75 and 2, so the shares of both ends must be of one sign. Without
+    that, or with a drift over time, a staircase of equal steps would pass for itself when shifted by a step.
+    """
+    whole = np.linalg.lstsq(explains, difference, rcond=None)[0]
+    rough = np.linalg.lstsq(explains[:, :2], difference, rcond=None)[0]
+    sign = np.sign(rough[1])
+    if sign * whole[1] >= 0.0 and sign * whole[2] >= 0.0:
+        return np.asarray(difference - explains @ whole)
+    if sign * whole[2] < 0.0:
+        return np.asarray(difference - explains[:, :2] @ rough)
+    smooth = explains[:, [0, 2]]
+    return np.asarray(difference - smooth @ np.linalg.lstsq(smooth, difference, rcond=None)[0])
