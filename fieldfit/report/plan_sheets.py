@@ -69,6 +69,11 @@ def plan_sheet(plan: Plan) -> Sheet:
         Heading(text="What it could see"),
         Bullets(items=_seen(plan)),
         Heading(text="What other choices would give"),
+        Paragraph(
+            text="95 % half-widths, one thing changed at a time. Roughness by the readings alone | with the limit of friction "
+            "formulas; ×÷1.7 means within a factor of 1.7 either way.",
+            kind="note",
+        ),
     ]
     for name, group in groupby(plan.options, key=lambda option: option.of):
         blocks.append(_options_table(name, list(group), plan))
@@ -237,18 +242,16 @@ def _expected_table(plan: Plan) -> Table:
 
 
 def _options_table(name: str, options: list[Option], plan: Plan) -> Table:
-    """Return what choices of one thing would give."""
-    rows = tuple(
-        (
-            f"{option.value}{' (plan)' if option.chosen else ''}",
-            *(
-                f"C ±{_percent(NORMAL_95 * one.ln_c)}; roughness {_roughness(one)} ({_spread(one.ln_roughness_wide)})"
-                for one in option.expected
-            ),
-        )
-        for option in options
-    )
-    return Table(head=(name, *(wall.name for wall in plan.walls)), rows=rows, widths=(0.22, 0.26, 0.26, 0.26))
+    """Return what choices of one thing would give: C, and roughness in both bands."""
+    rows = []
+    for option in options:
+        cells = [f"{option.value}{' (plan)' if option.chosen else ''}"]
+        for one in option.expected:
+            bands = (_short(one.ln_roughness), _short(one.ln_roughness_wide))
+            cells += [_short(one.ln_c), " | ".join(bands)]
+        rows.append(tuple(cells))
+    head = (name, *(text for wall in plan.walls for text in (f"{wall.name}: C", "roughness")))
+    return Table(head=head, rows=tuple(rows), widths=(0.25, *(0.11, 0.14) * len(plan.walls)))
 
 
 def _seen(plan: Plan) -> tuple[str, ...]:
@@ -272,6 +275,14 @@ def _spread(ln_standard: float) -> str:
     if half > 2.0:
         return "upper limit only"
     return f"± {_percent(half)}" if half < 0.4 else f"within a factor of {2.718281828**half:.1f}"
+
+
+def _short(ln_standard: float) -> str:
+    """Return the same in the least room."""
+    half = NORMAL_95 * ln_standard
+    if half > 2.0:
+        return "limit only"
+    return f"±{_percent(half)}" if half < 0.4 else f"×÷{2.718281828**half:.1f}"
 
 
 def _percent(share: float) -> str:

@@ -196,6 +196,8 @@ def _bullets(pen: _Pen, block: Bullets) -> None:
 
 
 def _table(pen: _Pen, block: Table) -> None:
+    if block.form:
+        pen.stroke((pen.left, pen.y), (pen.right, pen.y), QUIET, 0.6)
     if block.head:
         _row(pen, block, block.head, colour=QUIET)
         pen.stroke((pen.left, pen.y), (pen.right, pen.y), QUIET, 0.7)
