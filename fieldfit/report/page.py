@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING, Any
 from fieldfit import __version__
 from fieldfit.hydraulics.regime import LAMINAR_LIMIT, TURBULENT_LIMIT
 from fieldfit.report import captions, digits, explanation_tables, explanation_words, tables, words
+from fieldfit.report.clock_block import clock_block
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.strips import strips
 from fieldfit.report.survey_page import deposit_block, survey_block
@@ -172,6 +173,7 @@ def _campaign(finding: Finding, index: int) -> dict[str, Any]:
         "rows": tables.rows(campaign),
         "file": campaign.log.file,
         "sha256": campaign.log.sha256,
+        "clock_block": clock_block(campaign.log, finding.section, f"c{index}k"),
         "log_figure": {
             "name": f"c{index}",
             "title": "The log itself",
@@ -255,4 +257,5 @@ def _shown(campaign: dict[str, Any]) -> list[dict[str, Any]]:
     rivals += [reach["deposit"]["figure"] for reach in campaign["reaches"] if reach["deposit"]]
     rivals += [campaign["survey"]["figure"]] if campaign["survey"] else []
     several = [figure for reach in campaign["reaches"] for figure in reach["figures"]]
+    rivals += campaign["clock_block"]["figures"] if campaign["clock_block"] else []
     return several + [figure for figure in rivals if figure] + [campaign["log_figure"]]

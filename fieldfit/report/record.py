@@ -11,6 +11,7 @@ from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.section import Section
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Wall
 from fieldfit.report.explanation_record import explanations_record, stress_record
+from fieldfit.report.clock_block import clock_records
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.survey_record import deposit_record, survey_record
 from fieldfit.report.trend_record import ageing_record
@@ -92,6 +93,7 @@ def _campaign(campaign: CampaignFinding) -> Record:
         "reaches": [_reach(reach) for reach in campaign.reaches],
         "warnings": [{"about": caution.about, "text": caution.text} for caution in campaign.cautions],
         "statics": int(campaign.plateaus.static.size) - flowing,
+        "clocks": clock_records(campaign.log),
         "survey": survey_record(campaign.survey),
     }
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from fieldfit.report.figures.budget import budget
+from fieldfit.report.figures.clocks import clocks
 from fieldfit.report.figures.cloud import cloud
 from fieldfit.report.figures.curves import Curves, curves
 from fieldfit.report.figures.explanations import explanations
@@ -17,6 +18,7 @@ from fieldfit.report.figures.svg import svg
 __all__ = [
     "Curves",
     "budget",
+    "clocks",
     "cloud",
     "curves",
     "explanations",

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 from fieldfit.report import captions, figures
 from fieldfit.report import tables as report_tables
+from fieldfit.report.clock_block import clock_block
 from fieldfit.report.digits import fixed, known
 from fieldfit.report.page import TEMPLATES, environment, versions
 from fieldfit.report.screening import captions as own_captions
@@ -75,7 +76,7 @@ def _campaign(finding: ScreenFinding, index: int, drawings: dict[str, Figure]) -
         "reading": f"{words.extent(campaign)}. {words.reading(campaign, section)}",
         "timeline": {"name": f"c{index}", "title": "The log itself", "text": captions.rows(campaign)},
         "reaches": [_reach(finding, (index, k), drawings) for k in range(len(campaign.reaches))],
-        "clocks": words.clocks(campaign),
+        "clock_block": _clocks(finding, index, drawings),
         "checks": tables.checks(campaign.checks),
         "rows": report_tables.rows(campaign),
         "screens": tables.screens(campaign, section),
@@ -83,6 +84,14 @@ def _campaign(finding: ScreenFinding, index: int, drawings: dict[str, Figure]) -
         "file": campaign.log.file,
         "sha256": campaign.log.sha256,
     }
+
+
+def _clocks(finding: ScreenFinding, index: int, drawings: dict[str, Figure]) -> dict[str, Any] | None:
+    """Return what is printed of several loggers' clocks, and add the figure to the drawings."""
+    block = clock_block(finding.campaigns[index].log, finding.section, f"c{index}k")
+    for figure in block["figures"] if block else []:
+        drawings[figure["name"]] = figure["figure"]
+    return block
 
 
 def _reach(finding: ScreenFinding, place: tuple[int, int], drawings: dict[str, Figure]) -> dict[str, Any]:
