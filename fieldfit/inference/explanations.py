@@ -114,15 +114,18 @@ def explain(readings: ReachReadings, limit: Correlation, new_m: tuple[float, flo
     conditions, noise = conditions_of(readings, limit), noise_of(readings)
     tried = hypotheses(readings, new_m)
     found = weigh(tried, conditions, readings.head_loss_m, noise)
-    unexplained = not any(one.explains for one in found)
-    if unexplained:
+    if not any(one.explains for one in found):
         pairs = _pairs(tried)
-        tried, found = tried + pairs, found + weigh(pairs, conditions, readings.head_loss_m, noise)
+        of_pairs = weigh(pairs, conditions, readings.head_loss_m, noise)
+        if any(one.explains for one in of_pairs):
+            tried, found = tried + pairs, found + of_pairs
+    # Whether a cause passes through the readings is asked at the noise as it is, before any widening.
+    passes = [one.explains for one in found]
     scale = max(float(np.sqrt(min(one.chi_square / one.freedom for one in found))), 1.0)
     if scale > 1.0:
         noise = scale * noise
         found = weigh(tried, conditions, readings.head_loss_m, noise)
-    return _sum_up(found, (readings, conditions, noise), unexplained, scale)
+    return _sum_up(found, passes, (readings, conditions, noise), scale)
 
 
 def new_roughness(name: str | None) -> tuple[float, float] | None:
@@ -151,7 +154,7 @@ def _pairs(singles: tuple[Hypothesis, ...]) -> tuple[Hypothesis, ...]:
 
 
 def _sum_up(
-    found: tuple[Weighed, ...], read: tuple[ReachReadings, Conditions, Array], unexplained: bool, scale: float
+    found: tuple[Weighed, ...], passes: list[bool], read: tuple[ReachReadings, Conditions, Array], scale: float
 ) -> Explanations:
     """Rank what was weighed and see what can be told apart."""
     readings, conditions, noise = read
@@ -161,11 +164,11 @@ def _sum_up(
     order = [
         index for index in np.argsort(-probability) if len(found[index].causes) == 1 or probability[index] >= RANKED
     ]
-    ranked = tuple(_explanation(found[index], float(probability[index]), conditions) for index in order)
+    ranked = tuple(_explanation(found[index], passes[index], float(probability[index]), conditions) for index in order)
     rivals = [
         ranked[place]
         for place, index in enumerate(order)
-        if place and _rivals(found[order[0]], found[index], probability[index])
+        if place and passes[index] and _rivals(found[order[0]], found[index], probability[index])
     ]
     others = [one for one in rivals if alike(ranked[0].fitted, one.fitted, conditions, noise)]
     first = ranked[0]
@@ -173,7 +176,7 @@ def _sum_up(
         ranked=ranked,
         alike=_names([first, *others]),
         actions=actions(first, others, read),
-        unexplained=unexplained,
+        unexplained=not any(ok for one, ok in zip(found, passes, strict=True) if len(one.causes) == 1),
         noise_scale=scale,
         readings=readings,
         conditions=conditions,
@@ -198,7 +201,7 @@ def _names(group: list[Explanation]) -> tuple[str, ...]:
     return names if len(names) > 1 else ()
 
 
-def _explanation(one: Weighed, probability: float, conditions: Conditions) -> Explanation:
+def _explanation(one: Weighed, passes: bool, probability: float, conditions: Conditions) -> Explanation:
     """Say how one hypothesis stands."""
     trial = one.fitted.trial
     leak = float(trial.side[0]) != 0.0
@@ -209,7 +212,7 @@ def _explanation(one: Weighed, probability: float, conditions: Conditions) -> Ex
         sizes=one.sizes,
         option=one.option,
         meter_upstream=bool(trial.side[0] > 0.0) if leak else None,
-        explains=one.explains,
+        explains=passes,
         reduced_chi_square=one.chi_square / one.freedom,
         worst=(float(conditions.flow_m3_s[worst]), float(one.misfit[worst])),
         strain=_strain(one, conditions),

@@ -121,7 +121,7 @@ def paragraph(found: Explanations) -> str:
             f"The noise of the readings had to be taken as {fixed(found.noise_scale, 1)} times what it seems, "
             "or no cause would be content."
         )
-    if found.alike:
+    if found.alike or not found.ranked[0].explains:
         parts.append(next_step(found))
     return " ".join(part for part in parts if part)
 
@@ -151,19 +151,15 @@ def _leading(found: Explanations) -> str:
             f"Nothing unusual: a wall as new, and nothing else, explains the readings (probability "
             f"{percent(first.probability)} among all causes weighed)."
         )
-    if len(first.causes) > 1:
-        end = "two together come nearest" if not first.explains else "two together do"
-        return (
-            f"No single cause passes through the readings; {end}: {_article(named(first.causes))} "
-            f"(probability {percent(first.probability)})."
-        )
+    name, sure = _article(named(first.causes)), percent(first.probability)
+    if len(first.causes) > 1 and first.explains:
+        return f"No single cause passes through the readings; two together do: {name} (probability {sure})."
     if found.unexplained:
         return (
-            f"No cause, and no two together, pass through the readings: no one law fits them. Nearest comes "
-            f"{_article(first.causes[0])}. "
+            f"No cause, and no two together, pass through the readings: no one law fits them. Nearest comes {name}. "
             "Look at the log before believing any number drawn from it."
         )
-    return f"Of the causes weighed, {first.causes[0]} is the most probable ({percent(found.probability(first.causes[0]))})."
+    return f"Of the causes weighed, {name} is the most probable ({sure})."
 
 
 def _together(found: Explanations) -> str:
@@ -189,13 +185,15 @@ def next_step(found: Explanations) -> str:
     if not found.alike:
         if found.nothing_unusual:
             return "Nothing need be done to tell causes apart."
+        if not found.ranked[0].explains:
+            return "Test again: several flows, each held until it is steady, with a static before and after."
         return "No rival is left to tell apart; confirm the cause where it can be seen."
     chosen: list[Action] = []
-    parted: set[str] = set()
+    said: set[str] = set()
     for one in found.actions:
-        if one.parts[1] not in parted and len(chosen) < MOST_ACTIONS:
+        if not said & {one.name, one.parts[1]} and len(chosen) < MOST_ACTIONS:
             chosen.append(one)
-            parted.add(one.parts[1])
+            said |= {one.name, one.parts[1]}
     if not chosen:
         return "Test at flows that differ by a factor of three, with a static before and after."
     return " ".join(f"{one.text}: {_separation(one)}." for one in chosen)

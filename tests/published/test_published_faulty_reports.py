@@ -9,6 +9,7 @@ from readings_maker import head_loss, make_readings
 from fieldfit.field.section import Correlation
 from fieldfit.inference.estimate import estimate
 from fieldfit.inference.explanations import explain
+from fieldfit.report.explanation_words import paragraph
 
 GPM = 231.0 * 0.0254**3 / 60.0
 PSI_M = 6894.757293168361 / (998.2 * 9.80665)
@@ -34,8 +35,10 @@ def test_the_hydrant_record_that_no_single_law_fits_is_flagged(new_m):
     assert found.unexplained
     singles = [one for one in found.ranked if len(one.causes) == 1]
     assert len(singles) == 9
-    assert not any(one.explains and one.reduced_chi_square * found.noise_scale**2 < 3.0 for one in singles)
-    assert found.noise_scale > 1.0
+    assert not any(one.explains for one in singles)
+    assert found.noise_scale > 3.0
+    assert found.alike == ()
+    assert "no one law fits them" in paragraph(found)
 
 
 def deep_scale_report():
