@@ -8,7 +8,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
-from fieldfit.field.channels import Channels
 from fieldfit.field.log_hints import LogHints
 from fieldfit.field.section import Section
 from fieldfit.field.section_log import AIR_PA
@@ -61,15 +60,21 @@ def gauge_pressures(
     return {column: values - air if column in absolute else values for column, values in pressures.items()}
 
 
-def gauge_values(channels: Channels, section: Section, said: list[str]) -> dict[str, Array]:
-    """Return the values of a file that holds all of a section's columns, the absolute pressures as gauge pressures.
+def gauge_values(
+    values: Mapping[str, Array], air: tuple[frozenset[str], Array | None], section: Section, file: str, said: list[str]
+) -> dict[str, Array]:
+    """Return the values of all of a section's columns, the absolute pressures at its taps as gauge pressures.
 
     Parameters
     ----------
-    channels : Channels
-        What the file holds.
+    values : mapping of str to ndarray
+        (N,) values by column.
+    air : tuple
+        Columns that are absolute, and (N,) the pressure of the air [Pa] where a file has it.
     section : Section
         Names the taps.
+    file : str
+        Name of the log, for errors.
     said : list of str
         Sentences on what was taken off are added here.
 
@@ -78,12 +83,12 @@ def gauge_values(channels: Channels, section: Section, said: list[str]) -> dict[
     InputError
         When some gauges are absolute and some not, and the air's pressure is not known.
     """
-    taps = {} if section.differential else {tap.column: channels.values[tap.column] for tap in section.taps}
+    taps = {} if section.differential else {tap.column: values[tap.column] for tap in section.taps}
     try:
-        gauges = gauge_pressures(taps, channels.absolute, channels.barometer_pa, section.log_hints, said)
+        gauges = gauge_pressures(taps, air[0], air[1], section.log_hints, said)
     except InputError as error:
-        raise error.at(channels.file) from None
-    return {**channels.values, **gauges}
+        raise error.at(file) from None
+    return {**values, **gauges}
 
 
 def _air(

@@ -42,7 +42,7 @@ def read_clock(
     times: Series[Any],
     dates: Series[Any] | None,
     line: NDArray[np.int64],
-    place: ClockPlace | tuple[str, str],
+    place: ClockPlace,
     said: list[str],
 ) -> Clock:
     """Read the times of a log.
@@ -69,8 +69,6 @@ def read_clock(
     InputError
         At the first time that cannot be read, when only some have a time zone, or when they may be read in two ways.
     """
-    if isinstance(place, tuple):
-        place = ClockPlace(file=place[0], heading=place[1])
     first = first_text(times)
     if first is None:
         raise InputError("no row has a time", "Check that the right column is named 'time'.", place.where)
@@ -82,8 +80,8 @@ def read_clock(
         dates_known = not is_time_of_day(first) or place.known.day is not None
     stamps, universal = _stamps(times, first, line, place, said)
     absent = np.isnat(stamps)
-    unread = np.flatnonzero(absent & times.notna().to_numpy()) if absent.any() else ()
-    if len(unread):
+    unread = np.flatnonzero(absent & times.notna().to_numpy()) if absent.any() else np.array([], dtype=np.int64)
+    if unread.size:
         row = int(unread[0])
         seen = f"'{shown(str(times.iloc[row]))}' is not a date and time that can be read only one way"
         order = place.known.order

@@ -234,5 +234,8 @@ def _chosen(stamps: Stamps, swapped: Stamps, known: Known, place: tuple[str, str
     if np.array_equal(stamps[there] - stamps[there[0]], swapped[there] - swapped[there[0]]):
         said.append(f"'{shown(first)}' was taken as {starts[0]}, the day first; {cure} to change or settle it.")
         return stamps
-    seen = f"'{shown(first)}' may be {starts[0]} or {starts[1]}, and the order or duration of the rows depends on it"
+    row = there[np.flatnonzero(stamps[there] != swapped[there])[0]]
+    one, other = (array[row].astype("datetime64[D]") for array in (stamps, swapped))
+    ways = f"one row is of {one} or of {other}, and the order or duration of the rows depends on it"
+    seen = f"dates such as '{shown(first)}' may have the day or the month first: {ways}"
     raise InputError(seen, f"{cure[0].upper()}{cure[1:]}.", where)

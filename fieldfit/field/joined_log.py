@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import hashlib
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TypeVar
@@ -13,6 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.barometer import gauge_values
 from fieldfit.field.channel_values import flow_of, flow_step, pressure_steps, pressures_of
 from fieldfit.field.channels import Channels
 from fieldfit.field.clock_words import say_clock
@@ -155,7 +156,10 @@ def _joined(
     said += [_say_rows(rows, parts, int(np.count_nonzero(~covered)))] if len(parts) > 1 else []
     present = np.all([np.isfinite(one) for one in values.values()], axis=0)
     steps = {column: step for one in files for column, step in one.steps.items()}
-    temperature = _temperature(parts, rows, clocks)
+    temperature = _slowly(parts, rows, clocks, lambda one: one.temperature_degc)
+    absolute = frozenset[str]().union(*(one.absolute for one in files))
+    air = _slowly(parts, rows, clocks, lambda one: one.barometer_pa) if absolute else None
+    values = gauge_values(values, (absolute, air), section, base.file, said)
     first = float(rows.time_s[np.flatnonzero(np.isfinite(rows.time_s))[0]])
     widest = max(len(MISSING), len(UNPAIRED))
     reason = base.reason.astype(f"<U{max(widest, base.reason.dtype.itemsize // 4)}")
@@ -217,17 +221,19 @@ def _between(asked: Array, time: Array, reading: Array, room: float) -> Array:
     return np.where(np.abs(time[nearest] - asked) <= SAME_MOMENT * room, reading[nearest], np.where(gap, np.nan, line))
 
 
-def _temperature(parts: list[LoggerPart], rows: _Rows, clocks: Clocks) -> Array | None:
-    """Return the liquid's temperature at the rows, from the first logger that has it [°C]."""
+def _slowly(
+    parts: list[LoggerPart], rows: _Rows, clocks: Clocks, of: Callable[[Channels], Array | None]
+) -> Array | None:
+    """Return what changes slowly at the rows, from the first logger that has it: temperature or the air's pressure."""
     for place, one in enumerate(parts):
-        values = one.channels.temperature_degc
+        values = of(one.channels)
         if values is None:
             continue
         if one.channels is rows.part.channels:
             return np.array(values)
         known = np.isfinite(one.time_s) & np.isfinite(values) & one.in_order
         own = clocks.own(place, rows.time_s)
-        # Water warms and cools slowly: beyond its ends a thermometer's last word stands.
+        # Water and weather change slowly: beyond its ends an instrument's last word stands.
         return np.asarray(np.interp(np.nan_to_num(own), one.time_s[known], values[known]))
     return None
 

@@ -18,7 +18,7 @@ from fieldfit.field.log_headings import Headings, find_any_headings, find_headin
 from fieldfit.field.log_rows import read_rows
 from fieldfit.field.log_source import LogSource, log_source
 from fieldfit.field.section import Section
-from fieldfit.field.si_values import frozen, row_reasons, si_values
+from fieldfit.field.si_values import frozen, row_reasons, si_values, without_last
 from fieldfit.field.workbook import is_workbook, workbook_source
 
 Finder = Callable[[Sequence[str], Sequence[Wanted], str], Headings]
@@ -86,6 +86,7 @@ def _read(path: Path, section: Section, find: Finder) -> Channels:
     say_form(headings, decimal, said)
     if rows.line.size == 0:
         raise InputError("no rows stand below the headings", "Export the log again.", f"{path.name}:{headings.line}")
+    rows = without_last(rows) if source.cut_off else rows
     clock, timed = log_clock(rows, columns.time, form.above, (path, section), said)
     found = si_values(rows, columns, clock.time_s if timed else None, (path.name, section), said)
     return Channels(
@@ -142,7 +143,7 @@ def log_text(path: Path, section: Section, find: Finder, said: list[str]) -> Log
 def _log(channels: Channels, section: Section) -> Log:
     """Return the channels of a file that holds all of a section's columns as a log."""
     said: list[str] = []
-    values = gauge_values(channels, section, said)
+    values = gauge_values(channels.values, (channels.absolute, channels.barometer_pa), section, channels.file, said)
     return Log(
         file=channels.file,
         sha256=channels.sha256,

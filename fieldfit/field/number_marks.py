@@ -61,8 +61,8 @@ def decimal_mark(cells: Sequence[str], separator: str, file: str, stated: str | 
     if stated is not None:
         return stated
     marked = list(dict.fromkeys(cell.strip() for cell in cells if "," in cell or "." in cell))
-    commas = [cell for cell in marked if "," in cell and _fits(cell, ",") and not _fits(cell, ".")]
-    points = [cell for cell in marked if "." in cell and _fits(cell, ".") and not _fits(cell, ",")]
+    commas = [cell for cell in marked if _fits(cell, ",") and not _fits(cell, ".")]
+    points = [cell for cell in marked if _fits(cell, ".") and not _fits(cell, ",")]
     if commas and points:
         seen = f"it is not clear which mark is the decimal one in '{shown(commas[0])}' and '{shown(points[0])}'"
         raise InputError(seen, ADVICE, file)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TypeVar
 
 import numpy as np
@@ -90,6 +90,12 @@ def si_values(
         barometer_pa=_of(rows, columns.barometer),
         faults=faults,
     )
+
+
+def without_last(rows: Rows) -> Rows:
+    """Return rows with the numbers of the last one missing, as its line was cut off and any of them may be short."""
+    numbers = {place: np.append(values[:-1], np.nan) for place, values in rows.numbers.items()}
+    return replace(rows, numbers=numbers)
 
 
 def row_reasons(time_s: Array, found: SiValues, cut_off: bool) -> NDArray[np.str_]:

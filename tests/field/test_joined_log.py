@@ -249,3 +249,16 @@ def test_a_single_ordinary_file_is_read_as_ever(day, tmp_path):
     known = read_section(section)
     assert read_campaign_log(log, known).clocks == ()
     assert np.array_equal(read_campaign_log(log, known).flow_m3_s, read_log(log, known).flow_m3_s)
+
+
+def test_an_absolute_gauge_of_its_own_logger_needs_the_barometer(day, tmp_path):
+    section, paths = write(tmp_path, day, three())
+    for path in paths[1:]:
+        path.write_text(path.read_text(encoding="utf-8").replace("[kPa]", "[kPa abs]"), encoding="utf-8")
+    gauges = read_joined_log(paths, read_section(section))
+    assert any("standard 101.3 kPa" in sentence for sentence in gauges.assumed)
+    original = read_joined_log(write(tmp_path / "gauge", day, three())[1], read_section(section))
+    np.testing.assert_allclose(gauges.pressure_pa, original.pressure_pa - 101_325.0)
+    paths[1].write_text(paths[1].read_text(encoding="utf-8").replace("[kPa abs]", "[kPa]"), encoding="utf-8")
+    with pytest.raises(InputError, match="'downstream' is absolute and 'upstream' is not"):
+        read_joined_log(paths, read_section(section))
