@@ -10,8 +10,8 @@ from fieldfit import __version__
 from fieldfit.decisions.new_pipe import NewPipeComparison
 from fieldfit.field.section import Section
 from fieldfit.inference.wall import Band, BudgetEntry, PlateauValues, Wall
-from fieldfit.report.explanation_record import explanations_record, stress_record
 from fieldfit.report.clock_block import clock_records
+from fieldfit.report.explanation_record import explanations_record, stress_record
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
 from fieldfit.report.survey_record import deposit_record, survey_record
 from fieldfit.report.trend_record import ageing_record
