@@ -12,7 +12,7 @@ from typing import TextIO
 from fieldfit.errors import InputError
 
 LARGEST_LOG_BYTES = 4 * 1024**3
-"""A log beyond this size is not read: it would not fit the memory of an ordinary computer."""
+"""A log beyond this size is not read in one piece: it would not fit the memory of an ordinary computer."""
 ENCODINGS = {"utf-8": "UTF-8", "utf-8-sig": "UTF-8", "cp1252": "Windows-1252"}
 """Encodings as they are called."""
 
@@ -77,7 +77,7 @@ class LogSource:
         return InputError("the file is no text", advice, self.path.name)
 
 
-def log_source(path: Path) -> LogSource:
+def log_source(path: Path, in_parts: bool = False) -> LogSource:
     """Look at a file's size and bytes.
 
     UTF-8 is read, UTF-16 with its mark or where its zeros show it, and Windows-1252 (of which ISO 8859-1's letters are
@@ -87,6 +87,8 @@ def log_source(path: Path) -> LogSource:
     ----------
     path : Path
         The file.
+    in_parts : bool
+        Whether it will be read in parts, so that its size does not matter.
 
     Raises
     ------
@@ -98,7 +100,7 @@ def log_source(path: Path) -> LogSource:
     if not path.is_file():
         raise InputError("there is no such log", "Check its name and place.", str(path))
     size = path.stat().st_size
-    if size > LARGEST_LOG_BYTES:
+    if size > LARGEST_LOG_BYTES and not in_parts:
         raise InputError(
             f"the log has {size / 1024**3:.1f} GiB, and {LARGEST_LOG_BYTES / 1024**3:.0f} GiB is the most that is read",
             "Cut it to the hours of the test, or keep every tenth row.",

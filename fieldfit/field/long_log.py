@@ -60,7 +60,7 @@ def open_long_log(path: Path, section: Section) -> LongSource | None:
         return None
     if any(one.parts for one in section.campaigns if one.log.name == path.name):
         return None
-    source = log_source(path)
+    source = log_source(path, in_parts=True)
     said = list(source.remarks())
     form = log_form(source, section, find_headings, said)
     with path.open("rb") as file:
@@ -206,5 +206,5 @@ def _pieces_log(rows: LongRows, like: Log, pieces: Pieces) -> Log:
         flow_m3_s=pieces.about["flow"] + pieces.sums["f"] / count,
         pressure_pa=np.array(pressure),
         temperature_degc=known if rows.temperature else None,
-        reason=np.zeros(len(count), dtype="<U40"),
+        reason=np.zeros(len(count), dtype="<U1"),
     )

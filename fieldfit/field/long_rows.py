@@ -119,14 +119,17 @@ def _read_ahead(log: LongSource) -> Iterator[tuple[LineBlock, PlainRows | None]]
 
     form = log.form
     clock = form.columns.time.position if form.columns.time and form.columns.time.unit is None else None
+    gaps = False
     waiting: deque[tuple[LineBlock, Future[PlainRows | None]]] = deque()
     with ThreadPoolExecutor(READERS) as pool:
         try:
             for block in line_blocks(log.source, form.rows.headings.line):
-                waiting.append((block, pool.submit(plain_rows, block, form.rows, clock)))
+                waiting.append((block, pool.submit(plain_rows, block, form.rows, clock, gaps)))
                 if len(waiting) > READERS + 1:
                     ready, result = waiting.popleft()
-                    yield ready, result.result()
+                    plain = result.result()
+                    gaps = plain is not None and plain.gaps
+                    yield ready, plain
             while waiting:
                 ready, result = waiting.popleft()
                 yield ready, result.result()

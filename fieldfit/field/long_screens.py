@@ -61,7 +61,7 @@ def _log(rows: LongRows, name: str, line: NDArray[np.int64], columns: dict[str, 
         temperature_degc=columns.get("temperature"),
         flow_step_m3_s=float(rows.steps[0]),
         pressure_step_pa=rows.steps[1:],
-        reason=np.zeros(size, dtype="<U40"),
+        reason=np.zeros(size, dtype="<U1"),
     )
 
 

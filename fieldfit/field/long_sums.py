@@ -100,18 +100,16 @@ def _part(
     """Return the sums of the pieces in a range of rows."""
     first, stop, width = where
     good = np.zeros(stop - first, dtype=np.bool_)
-    level = {name: np.zeros(stop - first) for name in rows.channels}
     starts: list[NDArray[np.int64]] = []
     ends: list[NDArray[np.int64]] = []
     numbers: list[NDArray[np.int64]] = []
     for part, number in inside:
         good[part] = True
-        for name, values in level.items():
-            values[part] = about[name][number]
         cuts = np.arange(-(-(part.start + 1) // width) * width, part.stop, width)
         starts.append(np.append(part.start, cuts))
         ends.append(np.append(cuts, part.stop))
         numbers.append(np.full(len(cuts) + 1, number))
+    level = [(part, {name: float(values[number]) for name, values in about.items()}) for part, number in inside]
     good &= rows.store.read("code", first, stop) == 0
     begin, end = np.concatenate(starts), np.concatenate(ends)
     add = _Adder(begin, end, good)
@@ -129,10 +127,14 @@ def _part(
 
 
 def _sums(
-    rows: LongRows, span: tuple[int, int], level: dict[str, Array], add: _Adder
+    rows: LongRows, span: tuple[int, int], level: list[tuple[slice, dict[str, float]]], add: _Adder
 ) -> dict[str, NDArray[np.generic]]:
     """Return the sums of channels, squares and products."""
-    flow, *pressure = (rows.store.read(name, *span) - level[name] for name in rows.channels)
+    read = {name: rows.store.read(name, *span) for name in rows.channels}
+    for part, about in level:
+        for name, values in read.items():
+            values[part] -= about[name]
+    flow, *pressure = read.values()
     found: dict[str, NDArray[np.generic]] = {"f": add(flow), "ff": add(flow * flow)}
     for tap, values in enumerate(pressure):
         found[f"p{tap}"], found[f"pp{tap}"] = add(values), add(values * values)
