@@ -36,6 +36,8 @@ def natural(size: Size, bore_m: float) -> tuple[str, float, float, float]:
         best, low, high = 1e3 * best, 1e3 * low, 1e3 * high
     elif size.of == "gain":
         best, low, high = math.expm1(best), math.expm1(low), math.expm1(high)
+    elif size.of in ("place", "branch"):
+        best, low, high = (min(max(value, 0.0), 1.0) for value in (best, low, high))
     return _KEYS[size.of], best, low, high
 
 
@@ -164,7 +166,7 @@ def _leading(found: Explanations) -> str:
 
 def _together(found: Explanations) -> str:
     """Say what no two taps can part."""
-    if found.nothing_unusual or found.ranked[0].causes[0] not in ("rough wall", "reduced bore"):
+    if found.ranked[0].causes not in (("rough wall",), ("reduced bore",)):
         return ""
     return "A rougher wall and a smaller bore together, in any mixture, would do as well."
 

@@ -60,8 +60,8 @@ def explanations(found: Explanations) -> Figure:
 
 
 def drawn(found: Explanations) -> list[Explanation]:
-    """Return the explanations whose curves are drawn, most probable first."""
-    first = [one for index, one in enumerate(found.ranked) if index == 0 or one.probability >= LEAST]
+    """Return the explanations whose curves are drawn, most probable first; at least two, so that there is one to miss."""
+    first = [one for index, one in enumerate(found.ranked) if index < 2 or one.probability >= LEAST]
     return first[:MOST]
 
 
