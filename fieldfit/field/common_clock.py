@@ -162,7 +162,7 @@ def _clock(part: LoggerPart, lag: Lag, *, stated: bool, reference: bool) -> Logg
     asked = how == "recovered"
     if asked and lag.refused:
         how, offset, drift = "taken as equal", 0.0, 0.0
-    elif asked and lag.interval_s[0] <= 0.0 <= lag.interval_s[1] and drift == 0.0:
+    elif asked and drift == 0.0 and _may_agree(lag):
         how, offset = "agrees", 0.0
     return LoggerClock(
         file=part.channels.file,
@@ -179,6 +179,13 @@ def _clock(part: LoggerPart, lag: Lag, *, stated: bool, reference: bool) -> Logg
         profile=lag.profile,
         search=lag.search,
     )
+
+
+def _may_agree(lag: Lag) -> bool:
+    """Return whether a clock may be left as it stood: no lag at all lies well within the interval."""
+    low, high = lag.interval_s
+    half = 0.5 * ((high if lag.seconds < 0.0 else low) - lag.seconds)
+    return abs(lag.seconds) <= abs(half)
 
 
 def _middle(parts: list[LoggerPart], found: tuple[LoggerClock, ...]) -> float:

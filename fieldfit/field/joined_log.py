@@ -245,7 +245,7 @@ def _say_rows(rows: _Rows, parts: list[LoggerPart], unpaired: int) -> str:
     told = (
         f"All channels were put on the {len(rows.time_s)} rows of {base.channels.file}, one every {base.interval_s:g} s"
     )
-    told += f"; {' and '.join(dict.fromkeys(faster))} was averaged onto them" if faster else ""
+    told += f"; readings of {' and '.join(dict.fromkeys(faster))} were averaged onto them" if faster else ""
     return told + (f"; at {unpaired} of them another logger had not begun or had ended." if unpaired else ".")
 
 
