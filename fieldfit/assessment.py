@@ -12,7 +12,7 @@ from fieldfit.bore_and_taps import survey_of, with_deposit
 from fieldfit.decisions.new_pipe import compare_with_new
 from fieldfit.decisions.stress_test import stress_test
 from fieldfit.errors import InputError
-from fieldfit.field.campaign_files import gather_parts, read_campaign_log
+from fieldfit.field.campaign_files import gather_parts, logs_beside, read_campaign_log
 from fieldfit.field.dead_taps import bridge_dead_taps, without_dead_taps
 from fieldfit.field.log import Log
 from fieldfit.field.long_log import open_long_log, read_long_log
@@ -112,12 +112,11 @@ def read_campaign(section: Section, path: Path) -> tuple[Log, Screening, Plateau
 
 def logs_to_read(section: Section, given: tuple[str | Path, ...]) -> list[tuple[Path, dt.date | None]]:
     """Return the logs to read with their dates: those given, else the section's campaigns, else the only CSV file."""
-    folder = section.path.parent
     if given:
         return [(Path(path), None) for path in given]
     if section.campaigns:
         return [(campaign.log, campaign.date) for campaign in section.campaigns]
-    found = sorted(path for path in folder.glob("*.csv") if path.is_file())
+    found = logs_beside(section)
     if len(found) == 1:
         return [(found[0], None)]
     listed = ", ".join(f"'{path.name}'" for path in found) or "no CSV file"

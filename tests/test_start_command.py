@@ -105,3 +105,11 @@ def test_the_python_way_in_shows_itself_in_a_notebook():
     shown = finding._repr_html_()
     assert "Worse than new" in shown
     assert shown.startswith("<iframe")
+
+
+def test_reports_written_beside_the_log_are_not_taken_for_one(tmp_path, monkeypatch, capsys):
+    shutil.copytree(SAMPLE, tmp_path, dirs_exist_ok=True)
+    monkeypatch.chdir(tmp_path)
+    for _ in range(2):
+        assert main(["assess", ".", "--out", "."]) == 0, capsys.readouterr().err
+    assert len(list(tmp_path.glob("*.csv"))) == 2

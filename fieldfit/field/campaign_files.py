@@ -8,11 +8,27 @@ from dataclasses import replace
 from pathlib import Path
 
 from fieldfit.errors import InputError
-from fieldfit.field.log import Log
+from fieldfit.field.log import AUDIT_HEADINGS, Log
 from fieldfit.field.log_file import read_log
 from fieldfit.field.log_headings import find_any_headings, wanted_columns
 from fieldfit.field.log_source import log_source
 from fieldfit.field.section import Campaign, Section
+
+
+def logs_beside(section: Section) -> list[Path]:
+    """Return the CSV files in a section's folder, but for the lists of rows that earlier assessments left there."""
+    found = sorted(path for path in section.path.parent.glob("*.csv") if path.is_file())
+    return [path for path in found if not _is_audit(path)]
+
+
+def _is_audit(path: Path) -> bool:
+    """Return whether a file is a list of rows written by this program."""
+    try:
+        with path.open("rb") as file:
+            return file.readline(10_000).rstrip().endswith(",".join(AUDIT_HEADINGS).encode())
+    except OSError:
+        # Whoever reads the file says what is wrong with it.
+        return False
 
 
 def gather_parts(section: Section, given: Sequence[str | Path]) -> tuple[Section, tuple[Path, ...]]:
@@ -37,7 +53,7 @@ def gather_parts(section: Section, given: Sequence[str | Path]) -> tuple[Section
     """
     paths = [Path(path) for path in given]
     if not paths and not section.campaigns:
-        paths = sorted(path for path in section.path.parent.glob("*.csv") if path.is_file())
+        paths = logs_beside(section)
     if len(paths) < 2:
         return section, tuple(Path(path) for path in given)
     parts = [path for path in paths if _holds_part(path, section)]

@@ -11,6 +11,9 @@ from numpy.typing import NDArray
 
 from fieldfit.field.logger_clock import LoggerClock
 
+AUDIT_HEADINGS = ("plateau", "set aside because")
+"""Last headings of the list of rows that every assessment writes: by them it is told from a log."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Log:

@@ -7,16 +7,14 @@ import datetime as dt
 import io
 import math
 from collections.abc import Iterable
-from pathlib import Path
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.log import AUDIT_HEADINGS
 from fieldfit.field.row_runs import RowRuns
 from fieldfit.field.section import Section
 from fieldfit.report.finding import ScreenedLog
-
-LAST_HEADINGS = ("plateau", "set aside because")
 
 
 def audit_csv(campaign: ScreenedLog, section: Section) -> str:
@@ -51,7 +49,7 @@ def audit_csv(campaign: ScreenedLog, section: Section) -> str:
     if log.temperature_degc is not None:
         headings.append("temperature [degC]")
         columns.append(_numbers(log.temperature_degc))
-    headings += LAST_HEADINGS
+    headings += AUDIT_HEADINGS
     columns += [(str(n) if n else "" for n in screening.plateau.tolist()), screening.reason.tolist()]
     return _written(headings, columns)
 
@@ -59,7 +57,7 @@ def audit_csv(campaign: ScreenedLog, section: Section) -> str:
 def _of_runs(runs: RowRuns, start: dt.datetime | None) -> tuple[list[str], list[Iterable[str]]]:
     """Return headings and columns for runs of rows; `rows` is less than the lines where other runs lie between."""
     time = "time" if start else "time [s]"
-    headings = ["first line", "last line", f"first {time}", f"last {time}", "rows", *LAST_HEADINGS]
+    headings = ["first line", "last line", f"first {time}", f"last {time}", "rows", *AUDIT_HEADINGS]
     columns: list[Iterable[str]] = [
         map(str, runs.first_line.tolist()),
         map(str, runs.last_line.tolist()),
@@ -79,12 +77,6 @@ def _written(headings: list[str], columns: list[Iterable[str]]) -> str:
     writer.writerow(headings)
     writer.writerows(zip(*columns, strict=True))
     return out.getvalue()
-
-
-def is_audit(path: Path) -> bool:
-    """Return whether a file is an audit trail, which may lie beside the log it was made from."""
-    with path.open("rb") as file:
-        return file.readline(10_000).rstrip().endswith(",".join(LAST_HEADINGS).encode())
 
 
 def _numbers(values: NDArray[np.float64]) -> Iterable[str]:
