@@ -101,12 +101,13 @@ def read_dates(texts: Series[Any], known: Known, where: str, said: list[str]) ->
     if model[10] and model[10][0] == ",":
         texts = texts.str.replace(r",([0-9]+)$", r".\1", regex=True)
     orders = _orders(model, order_of_names or known.order)
-    stamps, order = _first_that_fits(texts, model, orders)
-    if len(orders) > 1 and order != "year first" and not np.isnat(stamps).all():
-        stamps = _settled(stamps, order, known, (first, where), said)
-    elif order == "day first" and known.order is None and order_of_names is None:
-        said.append(f"Dates such as '{shown(first)}' were read day first.")
-    return stamps + hours
+    if len(orders) == 1:
+        order = orders[0]
+        if order == "day first" and known.order is None and order_of_names is None:
+            said.append(f"Dates such as '{shown(first)}' were read day first.")
+    else:
+        order = _settled(texts, model, orders, (known, first, where), said)
+    return _parsed(texts, model, order) + hours
 
 
 def _spaced(text: str) -> str:
@@ -158,18 +159,6 @@ def _orders(model: re.Match[str], stated: DateOrder | None) -> tuple[DateOrder, 
     return ("day first", "month first") if len(model[5]) == 4 else ("day first", "month first", "year first")
 
 
-def _first_that_fits(texts: Series[Any], model: re.Match[str], orders: Sequence[DateOrder]) -> tuple[Stamps, DateOrder]:
-    """Return the stamps in the first order that reads every text, else in the one that reads most."""
-    found = []
-    for order in orders:
-        stamps = _parsed(texts, model, order)
-        found.append((int(np.count_nonzero(np.isnat(stamps))), stamps, order))
-        if found[-1][0] == int(texts.isna().sum()):
-            break
-    _, stamps, order = min(found, key=lambda one: one[0])
-    return stamps, order
-
-
 def _parsed(texts: Series[Any], model: re.Match[str], order: DateOrder) -> Stamps:
     """Return the stamps in one order; seconds and their fractions may be missing here and there."""
     import pandas as pd
@@ -198,44 +187,48 @@ def _parsed(texts: Series[Any], model: re.Match[str], order: DateOrder) -> Stamp
     return np.asarray(stamps.to_numpy())
 
 
-def _settled(stamps: Stamps, order: DateOrder, known: Known, place: tuple[str, str], said: list[str]) -> Stamps:
-    """Return the stamps with day and month in the order that is settled, and say which."""
-    first = place[0]
-    days = stamps.astype("datetime64[D]")
-    there = ~np.isnat(days)
-    months = days.astype("datetime64[M]")
-    number = (days - months).astype(np.int64) + 1
-    if order != "day first" or int(number[there].max()) > 12:
+def _settled(
+    texts: Series[Any],
+    model: re.Match[str],
+    orders: Sequence[DateOrder],
+    place: tuple[Known, str, str],
+    said: list[str],
+) -> DateOrder:
+    """Return the order that the dates are written in, and say which and why."""
+    known, first, where = place
+    each = texts.dropna().str.replace(r"[T ]+[0-9]{1,2}[:.][0-9]{2}[^ ]*$", "", regex=True).drop_duplicates()
+    days = {order: _parsed(each, _only_day(model), order) for order in orders}
+    fits = [order for order in orders if not np.isnat(days[order]).any()]
+    if len(fits) < 2:
+        order = fits[0] if fits else min(orders, key=lambda one: int(np.isnat(days[one]).sum()))
         said.append(f"Dates such as '{shown(first)}' were read {order}: no other order fits all rows.")
-        return stamps
-    swapped = _swapped(days, months, number) + (stamps - days)
-    return _chosen(stamps, swapped, known, place, said)
+        return order
+    usual = days[fits[0]]
+    if all(np.array_equal(days[order], usual) for order in fits):
+        return fits[0]
+    on_day = [
+        order for order in fits if known.day is not None and days[order][0].astype("datetime64[D]").item() == known.day
+    ]
+    if len(on_day) == 1:
+        said.append(
+            f"Dates such as '{shown(first)}' were read {on_day[0]}, so that the log begins on the day of the test."
+        )
+        return on_day[0]
+    cure = 'rite dates = "day first" or "month first" under [log] in the section file'
+    if all(np.array_equal(days[order] - days[order][0], usual - usual[0]) for order in fits):
+        day = usual[0].astype("datetime64[D]")
+        said.append(f"'{shown(first)}' was taken as {day}, the day first; w{cure} to settle it.")
+        return fits[0]
+    row = int(np.flatnonzero([len({str(days[order][row]) for order in fits}) > 1 for row in range(len(each))])[0])
+    ways = " or of ".join(str(days[order][row].astype("datetime64[D]")) for order in fits)
+    seen = (
+        f"dates such as '{shown(first)}' may be read in more than one order: one row is of {ways}, and the order or "
+        "duration of the rows depends on it"
+    )
+    raise InputError(seen, f"W{cure}.", where)
 
 
-def _swapped(days: Stamps, months: Stamps, number: NDArray[np.int64]) -> Stamps:
-    """Return days with day and month changed over."""
-    years = days.astype("datetime64[Y]")
-    month = (months - years).astype(np.int64)
-    changed = (years.astype("datetime64[M]") + (number - 1)).astype("datetime64[D]") + month
-    return np.asarray(np.where(np.isnat(days), np.datetime64("NaT"), changed))
-
-
-def _chosen(stamps: Stamps, swapped: Stamps, known: Known, place: tuple[str, str], said: list[str]) -> Stamps:
-    """Return the stamps that the day of the test settles, or the usual ones where nothing depends on it."""
-    first, where = place
-    there = np.flatnonzero(~np.isnat(stamps))
-    starts = [array[there[0]].astype("datetime64[D]").item() for array in (stamps, swapped)]
-    cure = 'write dates = "day first" or "month first" under [log] in the section file'
-    if starts[0] == starts[1] and np.array_equal(stamps[there], swapped[there]):
-        return stamps
-    if known.day in starts and starts[0] != starts[1]:
-        said.append(f"Dates such as '{shown(first)}' were read so that the log begins on the day of the test.")
-        return stamps if known.day == starts[0] else swapped
-    if np.array_equal(stamps[there] - stamps[there[0]], swapped[there] - swapped[there[0]]):
-        said.append(f"'{shown(first)}' was taken as {starts[0]}, the day first; {cure} to change or settle it.")
-        return stamps
-    row = there[np.flatnonzero(stamps[there] != swapped[there])[0]]
-    one, other = (array[row].astype("datetime64[D]") for array in (stamps, swapped))
-    ways = f"one row is of {one} or of {other}, and the order or duration of the rows depends on it"
-    seen = f"dates such as '{shown(first)}' may have the day or the month first: {ways}"
-    raise InputError(seen, f"{cure[0].upper()}{cure[1:]}.", where)
+def _only_day(model: re.Match[str]) -> re.Match[str]:
+    """Return the match of a date without its time."""
+    found = _STAMP.fullmatch(model[0][: model.end(5)])
+    return found or model

@@ -142,7 +142,7 @@ def _si(column: Column, raw: Array, time_s: Array | None, section: Section, said
         return (scaled + column.unit.offset if column.unit.offset else scaled), written_step(raw) * column.unit.factor
     if time_s is None:
         raise InputError("a count of volume has no flow without a clock", "Export the log with its times.")
-    flow = counted_flow(raw, time_s, column.unit.factor, section.meter.totaliser, said)
+    flow = counted_flow(raw, time_s, column, section.meter.totaliser, said)
     return flow.flow_m3_s, flow.step_m3_s
 
 

@@ -30,7 +30,7 @@ TIME_NAMES = (
     *("zeitstempel", "heure", "hora", "fecha y hora", "datum/uhrzeit", "datum zeit"),
 )
 """Headings of a clock."""
-ELAPSED_NAMES = ("elapsed time", "elapsed", "run time", "test time", "t")
+ELAPSED_NAMES = ("elapsed time", "elapsed", "run time", "test time")
 """Headings of a clock that counts from the start."""
 DATE_NAMES = ("date", "day", "log date", "sample date", "datum", "fecha")
 """Headings of days."""
@@ -41,6 +41,8 @@ COUNTED_NAMES = {
     for rest in ("", " from start", " since start", " elapsed")
 }
 """Headings that name the unit of a clock that counts from the start."""
+SHORT_NAMES = ("t",)
+"""Headings of a clock only where a unit of time stands with them: without it t may be a temperature."""
 
 _WITH_UNIT = re.compile(r"(.+?)\s*[\[(,_]\s*([^\])]+?)\s*[\])]?")
 _DAY_FIRST = re.compile(r"(?i)\bd{1,2}[./ -]m{1,3}[./ -]y")
@@ -88,21 +90,29 @@ def find_time(headings: Headings, first_row: Sequence[str], said: list[str], whe
     taken = {place for place, _ in headings.found}
     texts = ["" if place in taken else headings.with_unit(place) for place in range(len(headings.texts))]
     names = [_name_and_unit(text) for text in texts]
-    dates = [place for place, (name, _) in enumerate(names) if name in DATE_NAMES]
-    for wanted in (*TIME_NAMES, *ELAPSED_NAMES, *COUNTED_NAMES):
-        places = [place for place, (name, _) in enumerate(names) if name == wanted]
-        counts = all(names[place][1] for place in places)
-        if places and (counts or wanted not in COUNTED_NAMES or _is_number(first_row, places[0])):
+    dates = [place for place, (name, _) in enumerate(names) if name == "date" or _holds_days(name, first_row, place)]
+    for wanted in (*TIME_NAMES, *ELAPSED_NAMES, *SHORT_NAMES):
+        places = [
+            place for place, (name, its) in enumerate(names) if name == wanted and (its or name not in SHORT_NAMES)
+        ]
+        if places:
             return _clock_at(_only(places, headings, where), headings, first_row, dates, where)
-    open_ones = range(len(texts))
-    stamped = [place for place, field in enumerate(first_row[: len(names)]) if place in open_ones and is_stamp(field)]
-    stamped = [place for place in stamped if place not in taken]
+    fields = enumerate(first_row[: len(names)])
+    stamped = [place for place, field in fields if place not in taken and is_stamp(field)]
     if not stamped:
-        return None
+        counted = [
+            place for place, (name, _) in enumerate(names) if name in COUNTED_NAMES and _is_number(first_row, place)
+        ]
+        return _clock_at(_only(counted, headings, where), headings, first_row, dates, where) if counted else None
     place = _only(stamped, headings, where)
     if place not in dates:
         said.append(f"The column '{shown(headings.texts[place])}' was taken as the clock.")
     return _column(place, headings, None, None)
+
+
+def _holds_days(name: str, row: Sequence[str], place: int) -> bool:
+    """Return whether a column that may be called after days holds some."""
+    return name in DATE_NAMES and place < len(row) and is_day_only(row[place])
 
 
 def _is_number(row: Sequence[str], place: int) -> bool:

@@ -8,12 +8,15 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
+from fieldfit.field.log_columns import Column
 from fieldfit.field.resolution import written_step
 
 Array = NDArray[np.float64]
 
 LONGEST_GAP = 3.0
 """Times the usual interval after which the mean flow over a gap is no longer that of its last row."""
+FEW_MOVES = 10
+"""Changes of a count from which it shows whether it runs on."""
 FEW_DROPS = 2
 """Drops of a count that a rollover or a reset may explain."""
 ROLLOVER_INCREASE = 3.0
@@ -33,7 +36,7 @@ class CountedFlow:
     """Resolution: what one step of the count is worth over the usual interval, both ends together [m³/s]."""
 
 
-def counted_flow(counts: Array, time_s: Array, factor: float, runs_on: bool | None, said: list[str]) -> CountedFlow:
+def counted_flow(counts: Array, time_s: Array, column: Column, runs_on: bool | None, said: list[str]) -> CountedFlow:
     """Return the flow from a running count, or from the volume of each row.
 
     The flow of a row is what passed since the row before, over the time between; so the first row has none, nor has one
@@ -46,8 +49,8 @@ def counted_flow(counts: Array, time_s: Array, factor: float, runs_on: bool | No
         (N,) what the column shows, in its own unit; NaN where missing.
     time_s : ndarray
         (N,) clock [s]; NaN where missing.
-    factor : float
-        Volume of one [m³].
+    column : Column
+        What is counted, and the volume of one.
     runs_on : bool or None
         Whether the count runs on from row to row; None to tell by the counts.
     said : list of str
@@ -65,7 +68,9 @@ def counted_flow(counts: Array, time_s: Array, factor: float, runs_on: bool | No
 
     Examples
     --------
-    >>> counted_flow(np.array([9990.0, 0.0, 10.0]), np.array([0.0, 10.0, 20.0]), 0.001, True, []).flow_m3_s
+    >>> from fieldfit.field.units import unit
+    >>> litres = Column(heading="V [L]", position=1, unit=unit("L", "volume"), counts="volume")
+    >>> counted_flow(np.array([9990.0, 0.0, 10.0]), np.array([0.0, 10.0, 20.0]), litres, True, []).flow_m3_s
     array([  nan, 0.001, 0.001])
     """
     good = np.flatnonzero(np.isfinite(counts) & np.isfinite(time_s))
@@ -77,10 +82,11 @@ def counted_flow(counts: Array, time_s: Array, factor: float, runs_on: bool | No
     flow = np.full(len(counts), np.nan)
     if between.size == 0:
         return CountedFlow(flow_m3_s=flow, step_m3_s=0.0)
-    running = _runs_on(values, said) if runs_on is None else runs_on
+    running = _runs_on(values, column.counts == "pulses", said) if runs_on is None else runs_on
     usual = float(np.median(between))
     volumes = _increases(values, between, said) if running else values[1:]
     mean = np.where(between <= LONGEST_GAP * usual, volumes / between, np.nan)
+    factor = column.unit.factor
     flow[rows[1:]] = mean * factor
     said.append(
         "The flow of a row was taken as what passed since the row before, over the time between; the first has none."
@@ -89,17 +95,19 @@ def counted_flow(counts: Array, time_s: Array, factor: float, runs_on: bool | No
     return CountedFlow(flow_m3_s=flow, step_m3_s=float(written_step(values) * factor * both_ends / usual))
 
 
-def _runs_on(values: Array, said: list[str]) -> bool:
+def _runs_on(values: Array, pulses: bool, said: list[str]) -> bool:
     """Return whether a count runs on from row to row, where the counts themselves show it."""
     changes = np.diff(values)
     drops, moves = int(np.count_nonzero(changes < 0.0)), int(np.count_nonzero(changes))
-    if drops == 0 or (drops <= FEW_DROPS and moves > 25 * drops):
+    if moves >= FEW_MOVES and (drops == 0 or (drops <= FEW_DROPS and moves > 25 * drops)):
         said.append("The count of the flow column runs on from row to row.")
         return True
-    if drops > 0.1 * moves and moves >= 10:
-        said.append("The flow column was taken as the volume of each row: it does not run on from row to row.")
+    if pulses and moves >= FEW_MOVES and drops > 0.1 * moves:
+        said.append("The flow column was taken as the pulses of each row: they do not run on from row to row.")
         return False
-    raise InputError("it is not clear whether the count runs on from row to row", SETTLE)
+    # A volume that goes up and down may as well be a flow whose unit was written without its time.
+    unit = "" if pulses else " Where the column is a flow, write its unit with the time, such as m3/h."
+    raise InputError("it is not clear whether the count runs on from row to row", f"{SETTLE}{unit}")
 
 
 def _increases(values: Array, between: Array, said: list[str]) -> Array:
