@@ -73,7 +73,7 @@ class TomlTable:
 
     def missing(self, key: str) -> NoReturn:
         """Refuse the table for want of a key."""
-        choice = f" or {self._entry('pipe').line}" if key == "bore" else ""
+        choice = f" or {self._entry('pipe').line}" if key == "bore" and "pipe" in keys_of(self.kind) else ""
         raise InputError(f"'{key}' is missing", f"Write {self._entry(key).line}{choice}.").at(self.where(key))
 
     def _entry(self, key: str) -> Key:

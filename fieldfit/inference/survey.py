@@ -60,11 +60,10 @@ def survey(readings: SurveyReadings, limit: Correlation) -> Survey:
         if likely[i].probability * CLOSE > likely[0].probability and not _holds(likely[i], likely[0])
     )
     smallest = _smallest(one)
+    rival = _rival(found, chance, alike)
     return Survey(
         readings=readings,
-        reaches=tuple(
-            _reach(free, best.fit, (reach, smallest), limit) for reach in range(len(readings.section.taps) - 1)
-        ),
+        reaches=tuple(_reach(free, best.fit, (reach, smallest, rival), limit) for reach in range(len(smallest))),
         pooled=tuple(_wall(one, one.layout.walls.index(wall), limit) for wall in range(len(one.ln_friction))),
         same_wall=_same_wall(free, one),
         likely=likely,
@@ -112,9 +111,22 @@ def _uneven(fit: SurveyFit, reach: int) -> tuple[float, float]:
     return float(value[reach] + size * fit.u[own - offset]), float(np.sqrt(variance))
 
 
-def _reach(free: SurveyFit, best: SurveyFit, known: tuple[int, Array], limit: Correlation) -> SurveyReach:
+def _rival(found: list[Explanation], chance: Array, alike: tuple[int, ...]) -> Explanation | None:
+    """Return the likeliest explanation that cannot be told from the first and blames the same place."""
+    order = np.argsort(-chance)
+    first = found[int(order[0])]
+    for index in alike:
+        other = found[int(order[index])]
+        if other.cause != first.cause and other.reaches == first.reaches:
+            return other
+    return None
+
+
+def _reach(
+    free: SurveyFit, best: SurveyFit, known: tuple[int, Array, Explanation | None], limit: Correlation
+) -> SurveyReach:
     """Return what the survey says of one reach."""
-    reach, smallest = known
+    reach, smallest, rival = known
     taps = free.model.readings.section.taps
     alone = free.layout.walls.count(free.layout.walls[reach]) == 1
     k = float(smallest[reach])
@@ -123,6 +135,7 @@ def _reach(free: SurveyFit, best: SurveyFit, known: tuple[int, Array], limit: Co
         lower=taps[reach + 1].column,
         wall=_wall(free, reach, limit) if alone else None,
         explained=_wall(best, reach, limit),
+        rival=_wall(rival.fit, reach, limit) if rival is not None and reach in rival.reaches else None,
         smallest_k=k if np.isfinite(k) else None,
         smallest_m=k * _velocity_head(free.model, reach) if np.isfinite(k) else None,
     )

@@ -23,6 +23,8 @@ class SurveyReach:
     """Its wall when every reach is left its own; None where a dead tap hides the reach in its neighbour."""
     explained: SurveyWall
     """Its wall by the likeliest explanation of the whole survey."""
+    rival: SurveyWall | None
+    """Its wall by an explanation that cannot be told from that one, where it says another thing of this reach."""
     smallest_k: float | None
     """Smallest local loss here that would have been seen 19 times in 20 [-]; None where none could have been."""
     smallest_m: float | None

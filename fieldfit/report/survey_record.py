@@ -96,6 +96,7 @@ def _reach(one: SurveyReach) -> Record:
         "to": one.lower,
         "own_wall": None if one.wall is None else _wall(one.wall),
         "explained": _wall(one.explained),
+        "rival": None if one.rival is None else _wall(one.rival),
         "smallest_local_k": one.smallest_k,
         "smallest_local_m": one.smallest_m,
     }

@@ -25,8 +25,8 @@ def reach_by_reach(found: Survey, reaches: tuple[ReachFinding, ...]) -> Table:
                 f"{one.upper} to {one.lower}",
                 fixed(alone.readings.length.value, 1 if alone.readings.length.value < 100.0 else 0),
                 own,
-                _c(one.explained),
-                _roughness(one.explained),
+                _either(_c(one.explained), None if one.rival is None else _c(one.rival)),
+                _either(_roughness(one.explained), None if one.rival is None else _roughness(one.rival)),
                 "none" if one.smallest_k is None else significant(one.smallest_k, 2),
                 "–" if one.smallest_m is None else significant(one.smallest_m, 2),
             )
@@ -38,6 +38,11 @@ def ranking(found: Survey) -> Table:
     """Return the explanations of some probability, likeliest first."""
     rows = [(_capital(short(found, one)), percent(one.probability), size(one)) for one in found.likely]
     return Table(head=("explanation", "probability", "size, with its 95 % range"), rows=tuple(rows))
+
+
+def _either(first: str, rival: str | None) -> str:
+    """Return a value, or two where the taps leave both open."""
+    return first if rival is None else f"{first} or {rival}"
 
 
 def _capital(text: str) -> str:

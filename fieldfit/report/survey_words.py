@@ -148,7 +148,8 @@ def _same_words(test: SameWall | None, first: Likely) -> str:
         return "No two reaches are of one material, so their walls cannot be held against each other."
     chance = probability_words(test.probability)
     if test.probability < NOT_ALIKE:
-        return f"One roughness and no local loss for all reaches is out of the question: chance alone makes the taps stray so far {chance}."
+        ruled_out = "One roughness and no local loss for all reaches is out of the question"
+        return f"{ruled_out}: chance alone makes the taps stray so far {chance}."
     doubt = "in doubt" if test.probability < DOUBTFUL else "in keeping with the readings"
     told = f"One roughness for all reaches is {doubt}: chance alone makes them differ as much {chance}."
     return told if first.cause == "one wall" or test.probability < DOUBTFUL else told.replace("is in", "would be in", 1)
