@@ -27,11 +27,13 @@ Finder = Callable[[Sequence[str], Sequence[Wanted], str], Headings]
 def read_log(path: str | Path, section: Section) -> Log:
     """Read a log of a test section into SI units.
 
-    Understood are commas, semicolons or tabs between fields; UTF-8, or UTF-16 with its mark; lines above the headings;
-    units in the headings, which the section file overrules; ISO times, or none for a hand sheet with one row per flow;
-    decimal commas where fields are not parted by commas; the usual marks for a missing value; a row of averages at the
-    end. What was assumed is kept with the log. A temperature may be missing here and there, other values make their
-    row unusable.
+    Understood are tabs, semicolons, upright strokes or commas between fields; UTF-8, UTF-16 and Windows-1252; decimal
+    commas and thousands separators; lines above the headings, a row of units below them, comments, averages and notes
+    among the rows; units in the headings, which the section file overrules; dates and times in every usual writing, or
+    none for a hand sheet with one row per flow; totalisers, pulses, raw signals, velocities and absolute pressures; the
+    usual marks for a missing value; and one sheet of a workbook. What was assumed is kept with the log; what changes
+    the answer and can be read in two ways is an error that names the key to settle it. A temperature may be missing
+    here and there, other values make their row unusable.
 
     Parameters
     ----------
