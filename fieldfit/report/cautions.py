@@ -10,11 +10,8 @@ from fieldfit.field.log import Log
 from fieldfit.field.readings import Plateaus, ReachReadings, Screening
 from fieldfit.field.section import Section
 from fieldfit.report.finding import Caution, ReachFinding
+from fieldfit.report.static_cautions import disagreement_cautions, doubt_cautions, drift_cautions
 
-STATIC_DISAGREEMENT = 2.5
-"""Standard uncertainties by which statics may differ from survey and gauges."""
-DRIFT_SHARE = 0.05
-"""Share of the smallest head loss that the levelling may drift."""
 SCATTER = 3.0
 """Reduced χ² from which the readings do not follow one curve."""
 PULL = 2.5
@@ -48,7 +45,7 @@ def _of_reach(reach: ReachFinding, section: Section) -> Iterator[Caution]:
     if reach.wall.state == "no estimate":
         yield Caution(about="no estimate", text=reach.wall.because)
     yield from _rivals(reach)
-    yield from _statics(reach.readings)
+    yield from _statics(reach.readings, section)
     yield from _fit(reach)
     yield from _coverage(reach)
     yield from _against_new(reach, section)
@@ -73,7 +70,7 @@ def _rivals(reach: ReachFinding) -> Iterator[Caution]:
     yield Caution(about="explanation", text=f"{text} See what else could explain it before using the roughness.")
 
 
-def _statics(readings: ReachReadings) -> Iterator[Caution]:
+def _statics(readings: ReachReadings, section: Section) -> Iterator[Caution]:
     """Check the levelling against survey and gauges, and its drift."""
     levelling = readings.levelling
     if levelling is None:
@@ -83,20 +80,8 @@ def _statics(readings: ReachReadings) -> Iterator[Caution]:
             "A few minutes with the flow stopped, before and after, would level them.",
         )
         return
-    if abs(levelling.offset_m) > STATIC_DISAGREEMENT * levelling.expected_m:
-        yield Caution(
-            about="static",
-            text=f"At rest the gauges disagree with the surveyed elevations by {levelling.offset_m:+.2f} m, where their "
-            f"stated limits allow about {2.0 * levelling.expected_m:.2f} m. The static was believed. "
-            "Check elevations, gauge zeros and whether water really stood still.",
-        )
-    smallest = float(np.min(np.abs(readings.head_loss_m), initial=np.inf))
-    if levelling.drift_m is not None and abs(levelling.drift_m) > DRIFT_SHARE * smallest:
-        yield Caution(
-            about="static",
-            text=f"The gauges drifted by {levelling.drift_m:+.3f} m against each other between the first and the last "
-            f"static; the smallest head loss used is {smallest:.2f} m. The drift was shared out over time.",
-        )
+    yield from disagreement_cautions(readings, section)
+    yield from drift_cautions(readings)
 
 
 def _fit(reach: ReachFinding) -> Iterator[Caution]:
@@ -169,6 +154,7 @@ def _against_new(reach: ReachFinding, section: Section) -> Iterator[Caution]:
 
 def _of_log(section: Section, log: Log, screening: Screening, plateaus: Plateaus) -> Iterator[Caution]:
     """Check the log itself."""
+    yield from doubt_cautions(log, screening, plateaus, section)
     rows = log.rows
     aside = rows - screening.used
     if aside > SET_ASIDE_SHARE * rows:

@@ -158,8 +158,8 @@ def test_lags_lie_within_their_stated_intervals(runs):
 
 
 def test_intervals_say_something(runs):
-    """An interval that held anything would be no result: half of them are within a second."""
-    assert np.nanmedian([run.width_s for run in runs]) < 1.5
+    """An interval that held anything would be no result: half of them are narrower than two rows, wave and all."""
+    assert np.nanmedian([run.width_s for run in runs]) < 4.0
 
 
 def test_friction_is_not_biased(runs):
