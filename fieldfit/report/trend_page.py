@@ -89,6 +89,7 @@ def _reach(ageing: Ageing, name: str, several: bool) -> dict[str, Any]:
         "figures": _figures(ageing, name),
         "campaigns": tables.campaigns(ageing),
         "changes": tables.changes(ageing),
+        "certainty": tables.certainty(ageing),
         "cleanings": tables.cleanings(ageing),
         "growth": tables.growth(ageing),
         "outlook": outlook,

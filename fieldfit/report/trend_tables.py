@@ -6,9 +6,11 @@ import datetime as dt
 
 from fieldfit.decisions.ageing import Ageing
 from fieldfit.decisions.growth import LAWS
+from fieldfit.decisions.growth_prior import Belief
 from fieldfit.decisions.visits import Stage
+from fieldfit.inference.change import Change
 from fieldfit.report import trend_words as words
-from fieldfit.report.digits import fixed, limit, litres, percent, significant, span
+from fieldfit.report.digits import fixed, limit, litres, percent, significant
 from fieldfit.report.tables import Row, Table
 
 YEARS = (0, 5, 10, 20)
@@ -23,62 +25,82 @@ EVENTS = {
 
 def campaigns(ageing: Ageing) -> Table:
     """Return every campaign by the joint fit."""
-    head = ("test", "roughness [mm]", f"C at {litres(ageing.duty.flow_m3_s)}", "log", "since the test before")
+    head = ("test", "roughness [mm]", f"C at {litres(ageing.duty.flow_m3_s)}", "since the test before")
     rows = []
-    for visit, point in zip(ageing.visits, ageing.points, strict=True):
+    for point in ageing.points:
         wall = words.triple(point.roughness_m, "", 1e3)
         if point.roughness_m[0] <= 0.0:
             wall = f"under {limit(1e3 * max(point.roughness_m[2], 1e-6))}"
-        rows.append((point.date.isoformat(), wall, words.triple(point.c), visit.file, "; ".join(point.events) or "–"))
+        rows.append((point.date.isoformat(), wall, words.triple(point.c), "; ".join(point.events) or "–"))
     return Table(head=head, rows=tuple(rows))
 
 
 def changes(ageing: Ageing) -> Table | None:
-    """Return the changes between campaigns, by the joint fit and by subtraction."""
+    """Return the changes between campaigns; None with one."""
     if not ageing.changes:
         return None
-    by = f"{100.0 * ageing.changes[0].worse_by:.0f} %"
-    head = (
-        "from, to", "head loss, times", "C, times", "roughness, times", "worse at all", f"worse by over {by}",
-        "smallest rise seen", "± together", "± subtracted",
-    )  # fmt: skip
+    head = ("from, to", "head loss, times", "C, times", "roughness, times", "roughness, more by [mm]")
     rows = []
     for change in ageing.changes:
-        roughness = change.roughness_ratio
+        ratio = change.roughness_ratio
         rows.append(
             (
-                f"{change.since.isoformat()}, {change.until.isoformat()}",
+                _pair(change),
                 words.triple(change.head_loss_ratio),
                 words.triple(change.c_ratio),
-                "–" if roughness is None else words.triple(roughness),
-                percent(change.probability_worse),
-                percent(change.probability_worse_by),
-                f"{significant(100.0 * change.smallest, 2)} %",
-                f"{significant(196.0 * change.standard, 2)} %",
-                f"{significant(196.0 * change.naive_standard, 2)} %",
+                "–" if ratio is None else words.triple(ratio),
+                words.triple(change.roughness_change_m, "", 1e3),
             )
         )
     return Table(head=head, rows=tuple(rows))
+
+
+def certainty(ageing: Ageing) -> Table | None:
+    """Return how sure the changes are, by the joint fit and by subtraction; None with one campaign."""
+    if not ageing.changes:
+        return None
+    by = f"{100.0 * ageing.changes[0].worse_by:.0f} %"
+    head = ("from, to", "worse at all", f"worse by over {by}", "smallest rise seen", "± together", "± subtracted")
+    rows = [
+        (
+            _pair(change),
+            percent(change.probability_worse),
+            percent(change.probability_worse_by),
+            f"{significant(100.0 * change.smallest, 2)} %",
+            f"{significant(196.0 * change.standard, 2)} %",
+            f"{significant(196.0 * change.naive_standard, 2)} %",
+        )
+        for change in ageing.changes
+    ]
+    return Table(head=head, rows=tuple(rows))
+
+
+def _pair(change: Change) -> str:
+    return f"{change.since:%Y-%m} to {change.until:%Y-%m}"
+
+
+def _orders(belief: Belief) -> str:
+    """Return the range of something known by its order of magnitude [mm]."""
+    low, high = (significant(1e3 * value, 2) for value in belief.span)
+    return f"{low} to {high} mm"
 
 
 def growth(ageing: Ageing) -> tuple[Row, ...]:
     """Return what is known of the growth, and from where."""
     formulas = {law.name: law.formula for law in LAWS}
     laws = ", ".join(f"{name} ({formulas[name]}) {percent(share)}" for name, share in ageing.growth.probabilities)
-    low, high = ageing.rate.span
     rows = [
         ("Laws, with their probabilities", laws),
         ("Growth over the next ten years", f"{words.triple(ageing.rate_ahead_m_year, 'mm', 1e3)} a year"),
-        ("Rate believed in beforehand", f"{span(1e3 * low, 1e3 * high, 'mm')} a year: {ageing.rate.source}"),
+        ("Rate believed in beforehand", f"{_orders(ageing.rate)} a year: {ageing.rate.source}"),
     ]
     if ageing.rate_past_m_year is not None:
         rows.insert(
             1, (_until_now(ageing.stages[-1]), f"{words.triple(ageing.rate_past_m_year, 'mm', 1e3)} a year on average")
         )
     for stage, belief in zip(ageing.stages, ageing.starts, strict=True):
-        low, high = belief.span
         name = f"Roughness on {stage.start.isoformat()} ({EVENTS[stage.event]}), believed in beforehand"
-        rows.append((name, f"{span(1e3 * low, 1e3 * high, 'mm')}: {belief.source}"))
+        rows.append((name, f"{_orders(belief)}: {belief.source}"))
     return tuple(rows)
 
 
@@ -96,7 +118,7 @@ def outlook(ageing: Ageing) -> Table:
         (f"head loss at {flow} [m]", forecast.head_loss_m, 1.0),
     ]
     if forecast.capacity_m3_s is not None and duty.head_m is not None:
-        fans.append((f"capacity at {significant(duty.head_m)} m [L/s]", forecast.capacity_m3_s, 1e3))
+        fans.append((f"capacity at {duty.head_m:g} m [L/s]", forecast.capacity_m3_s, 1e3))
     fans.append(("deposit, if bore [mm]", forecast.deposit_m, 1e3))
     last, end = ageing.visits[-1].date, forecast.dates[-1]
     days = [day for day in (_later(last, years) for years in YEARS) if day <= end + dt.timedelta(days=31)]

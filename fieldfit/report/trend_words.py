@@ -127,10 +127,10 @@ def at(ageing: Ageing, fan: Fan, date: dt.date) -> tuple[float, float, float]:
 def threshold_words(crossing: Crossing, ageing: Ageing) -> str:
     """Return what is crossed."""
     if crossing.what == "c":
-        return f"C {significant(crossing.limit)} at {litres(ageing.duty.flow_m3_s)}"
+        return f"C {crossing.limit:g} at {litres(ageing.duty.flow_m3_s)}"
     if crossing.what == "head_loss":
-        return f"a head loss of {significant(crossing.limit)} m at {litres(ageing.duty.flow_m3_s)}"
-    head = significant(ageing.duty.head_m or 0.0)
+        return f"a head loss of {crossing.limit:g} m at {litres(ageing.duty.flow_m3_s)}"
+    head = f"{ageing.duty.head_m or 0.0:g}"
     return f"a capacity of {litres(crossing.limit)} at {head} m of head"
 
 
@@ -161,7 +161,7 @@ def cleaning_words(cleaning: Cleaning, ageing: Ageing) -> str:
     """Say what a cleaning brought."""
     done = {"cleaned": "The cleaning", "lined": "The lining"}.get(cleaning.event, "Whatever was done")
     told = (
-        f"{done} by {day(cleaning.date)} brought C at {litres(ageing.duty.flow_m3_s)} from {fixed(cleaning.c_before[1], 0)} "
+        f"{done} of {day(cleaning.date)} brought C at {litres(ageing.duty.flow_m3_s)} from {fixed(cleaning.c_before[1], 0)} "
         f"to {fixed(cleaning.c_after[1], 0)}: a gain of {triple(cleaning.c_gain)} with a probability of "
         f"{percent(cleaning.probability_gain)} that there is one. At equal head it carries {triple(cleaning.capacity_ratio)} "
         "times the flow."

@@ -43,7 +43,7 @@ def crossings(ageing: Ageing) -> Figure:
     reach = max(LEAST_YEARS, *(_until(crossing) for crossing in ageing.crossings))
     labels = []
     for crossing in ageing.crossings:
-        years, share = (np.array(column) for column in zip(*crossing.curve, strict=True))
+        years, share = _line(crossing, reach)
         colour = COLOURS[crossing.what]
         ax.plot(last + years, 100.0 * share, color=colour, **style.STROKES[STROKES[crossing.what]])
         _marks(ax, crossing, colour)
@@ -63,10 +63,20 @@ def crossings(ageing: Ageing) -> Figure:
     return figure
 
 
+def _line(crossing: Crossing, reach: float) -> tuple[Array, Array]:
+    """Return years after the last test and probability, from the last test to the end of the figure."""
+    curve = np.array([(0.0, crossing.already), *(pair for pair in crossing.curve if 0.0 < pair[0] < reach)])
+    end = (
+        float(np.mean([year <= reach for year, _ in crossing.curve])) * (1.0 - crossing.never)
+        if crossing.curve
+        else 0.0
+    )
+    return np.append(curve[:, 0], reach), np.append(curve[:, 1], max(end, float(curve[-1, 1])))
+
+
 def _until(crossing: Crossing) -> float:
     """Return how many years the curve needs."""
-    known = [year for year, share in crossing.curve if share < 0.985 * max(crossing.curve[-1][1], 1e-9)]
-    return min(1.12 * (max(known, default=0.0) + 2.0), 100.0)
+    return min(1.1 * (max((year for year, _ in crossing.curve), default=0.0) + 1.0), 60.0)
 
 
 def _marks(ax: Axes, crossing: Crossing, colour: str) -> None:

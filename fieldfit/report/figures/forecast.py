@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from fieldfit.decisions.ageing import Ageing
 from fieldfit.decisions.forecast import Fan
-from fieldfit.report.digits import litres, significant
+from fieldfit.report.digits import litres
 from fieldfit.report.figures import style
 from fieldfit.report.figures.timeline import FAN_KEY, draw_fan, row_key, year_of
 
@@ -58,7 +58,7 @@ def _panels(ageing: Ageing) -> list[Panel]:
         (f"head loss at {flow} [m]", found.head_loss_m, 1.0, limits.get("head_loss")),
     ]
     if found.capacity_m3_s is not None and duty.head_m is not None:
-        name = f"flow at {significant(duty.head_m)} m of head [L/s]"
+        name = f"flow at {duty.head_m:g} m of head [L/s]"
         panels.append((name, found.capacity_m3_s, 1e3, limits.get("capacity")))
     return panels
 
@@ -77,7 +77,7 @@ def _draw(ax: Axes, ageing: Ageing, panel: Panel) -> None:
     if limit is not None:
         low, high = min(low, scale * limit), max(high, scale * limit)
         ax.axhline(scale * limit, color=style.NEW, **style.STROKES["dashes"])
-        labels.append((scale * limit, f"threshold {significant(scale * limit)}", style.NEW))
+        labels.append((scale * limit, f"threshold {scale * limit:g}", style.NEW))
     room = 0.08 * (high - low)
     style.frame(ax, (float(years[shown][0]), float(years[-1])), (low - room, high + room), (9, 5))
     ticks = style.steps(float(years[shown][0]), float(years[-1]), 9)

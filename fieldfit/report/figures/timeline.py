@@ -77,10 +77,11 @@ FAN_KEY = (
 def row_key(ax: Axes, height: float, entries: Sequence[tuple[str, str, str]]) -> None:
     """Explain marks side by side above the right half of some axes."""
     width = ax.get_position().width * style.WIDTH_MM
-    place = width
+    place = width + 4.0
     for mark, colour, text in reversed(entries):
         place -= 11.0 + 1.28 * len(text)
         style.key(ax, (place / width, height), [(mark, colour, text)])
+        ax.lines[-1].set_clip_on(False)
 
 
 def _ends(ageing: Ageing) -> tuple[float, float]:
