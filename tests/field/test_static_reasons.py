@@ -31,7 +31,7 @@ CASES = {
     "one pressure in another unit": rest(lower_pa=P2 / 6.894757),
     "both pressures in another unit": rest(P1 / 6.894757, P2 / 6.894757),
     "absolute pressure": rest(upper_pa=P1 + 101325.0),
-    "slip in an elevation": rest(elevation=(UPPER + 10.0, LOWER)),
+    "slip in an elevation": rest(elevation=(UPPER, LOWER + 10.0)),
     "water still flows": rest(lower_pa=P2 - 1.3 * WEIGHT, smallest_loss_m=2.0),
 }
 
