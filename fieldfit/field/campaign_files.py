@@ -9,16 +9,22 @@ from pathlib import Path
 
 from fieldfit.errors import InputError
 from fieldfit.field.log import AUDIT_HEADINGS, Log
-from fieldfit.field.log_file import read_log
+from fieldfit.field.log_file import log_text, read_log
 from fieldfit.field.log_headings import find_any_headings, wanted_columns
-from fieldfit.field.log_source import log_source
 from fieldfit.field.section import Campaign, Section
+
+OTHER_LOGS = (".tsv", ".txt", ".dat", ".xlsx", ".xlsm")
+"""Endings of logs besides .csv."""
 
 
 def logs_beside(section: Section) -> list[Path]:
-    """Return the CSV files in a section's folder, but for the lists of rows that earlier assessments left there."""
-    found = sorted(path for path in section.path.parent.glob("*.csv") if path.is_file())
-    return [path for path in found if not _is_audit(path)]
+    """Return the CSV files in a section's folder, but for the lists of rows that earlier assessments left there.
+
+    Without any, files with other endings that loggers and spreadsheets use are returned.
+    """
+    files = sorted(path for path in section.path.parent.iterdir() if path.is_file())
+    found = [path for path in files if path.suffix.casefold() == ".csv" and not _is_audit(path)]
+    return found or [path for path in files if path.suffix.casefold() in OTHER_LOGS and not path.name.startswith("~$")]
 
 
 def _is_audit(path: Path) -> bool:
@@ -68,7 +74,7 @@ def _holds_part(path: Path, section: Section) -> bool:
     """Return whether a file's headings name some of the columns and not all; a look at its beginning tells."""
     wanted = wanted_columns(section)
     try:
-        source = log_source(path)
+        source = log_text(path, section, find_any_headings, [])
         with source.open() as file:
             lines = list(itertools.islice(file, 200))
         return len(find_any_headings(lines, wanted, path.name).wanted) < len(wanted)

@@ -2,12 +2,15 @@
 
 import csv
 import io
+from dataclasses import replace
 
 import logger_exports as le
 import numpy as np
 import pytest
 
 from fieldfit.assessment import assess_campaign
+from fieldfit.errors import InputError
+from fieldfit.field.campaign_files import logs_beside
 from fieldfit.field.log_file import read_log
 from fieldfit.field.section_file import read_section
 from fieldfit.report.audit import audit_csv
@@ -36,11 +39,24 @@ def written(export, folder):
     return read_section(folder), path
 
 
+@pytest.fixture(scope="module")
+def assessed(tmp_path_factory):
+    """Assess an export once for all tests."""
+    done = {}
+
+    def finder(name):
+        if name not in done:
+            export = EXPORTS[name]()
+            section, path = written(export, tmp_path_factory.mktemp("export"))
+            done[name] = export, section, assess_campaign(section, path, None)
+        return done[name]
+
+    return finder
+
+
 @pytest.mark.parametrize("name", EXPORTS)
-def test_the_same_record_however_it_was_written(name, tmp_path, clean):
-    export, (_, reference) = EXPORTS[name](), clean
-    section, path = written(export, tmp_path)
-    campaign = assess_campaign(section, path, None)
+def test_the_same_record_however_it_was_written(name, assessed, clean):
+    (export, _, campaign), (_, reference) = assessed(name), clean
     log, true = campaign.log, reference.log
     assert any(export.says in sentence for sentence in log.assumed) or not export.says, log.assumed
     count = len(true.reason)
@@ -65,10 +81,8 @@ def test_the_same_record_however_it_was_written(name, tmp_path, clean):
 
 
 @pytest.mark.parametrize("name", EXPORTS)
-def test_the_audit_adds_up(name, tmp_path, clean):
-    export = EXPORTS[name]()
-    section, path = written(export, tmp_path)
-    campaign = assess_campaign(section, path, None)
+def test_the_audit_adds_up(name, assessed, clean):
+    export, section, campaign = assessed(name)
     rows = list(csv.DictReader(io.StringIO(audit_csv(campaign, section))))
     aside = sum(bool(row["set aside because"]) for row in rows)
     used = sum(bool(row["plateau"]) and not row["set aside because"] for row in rows)
@@ -83,10 +97,16 @@ def test_no_two_writings_are_alike():
 
 
 def test_a_velocity_needs_a_meter_that_senses_it(tmp_path):
-    from dataclasses import replace
-
-    from fieldfit.errors import InputError
-
     section, path = written(replace(EXPORTS["velocity"](), section=()), tmp_path)
     with pytest.raises(InputError, match=r"export\.csv:1, column 'flow \[m/s\]': the column is a velocity"):
         read_log(path, section)
+
+
+@pytest.mark.parametrize("suffix", [".txt", ".tsv", ".dat", ".xlsx"])
+def test_the_folders_only_log_may_have_another_ending(suffix, tmp_path):
+    name = "workbook, plain" if suffix == ".xlsx" else "tabs"
+    export = replace(EXPORTS[name](), suffix=suffix)
+    section, path = written(export, tmp_path)
+    assert logs_beside(section) == [path]
+    (tmp_path / "log.csv").write_text("time\n", encoding="utf-8")
+    assert logs_beside(section) == [tmp_path / "log.csv"]
