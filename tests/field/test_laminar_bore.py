@@ -28,15 +28,15 @@ accuracy = "0.1 % of 10 bar"
 @pytest.fixture
 def oil(tmp_path):
     """Four laminar and four turbulent flows in a pipe narrowed to 92 mm, 0.3 mm rough."""
-    bore, viscosity, rows = 0.092, 60e-6, ["Q [L/s],p1 [kPa],p2 [kPa]", "0,500.000,500.000"]
-    for flow in (2e-3, 4e-3, 6e-3, 8e-3, 22e-3, 26e-3, 30e-3, 34e-3):
+    bore, viscosity, rows = 0.092, 60e-6, ["Q [L/s],p1 [kPa],p2 [kPa]", "0,900.000,900.000"]
+    for flow in (3.137e-3, 4.211e-3, 6.043e-3, 8.019e-3, 20.353e-3, 22.129e-3, 24.747e-3, 27.931e-3):
         velocity = flow / (np.pi / 4.0 * bore**2)
         reynolds, x = velocity * bore / viscosity, 6.0
         for _ in range(100):
             x = -2.0 * np.log10(0.3e-3 / bore / 3.7 + 2.51 * x / reynolds)
         f = 64.0 / reynolds if reynolds < 2100.0 else x**-2
         head = f * 200.0 / bore * velocity**2 / (2.0 * GRAVITY)
-        rows.append(f"{1e3 * flow:.3f},500.000,{500.0 - 870.0 * GRAVITY * head / 1e3:.3f}")
+        rows.append(f"{1e3 * flow:.3f},900.000,{900.0 - 870.0 * GRAVITY * head / 1e3:.3f}")
     (tmp_path / "section.toml").write_text(SECTION, encoding="utf-8")
     (tmp_path / "log.csv").write_text("\n".join(rows) + "\n", encoding="utf-8")
     return assess(tmp_path).campaigns[0].reaches[0]
