@@ -18,6 +18,7 @@ from fieldfit.field.log import Log
 from fieldfit.field.log_form import log_form, say_form
 from fieldfit.field.log_headings import find_headings
 from fieldfit.field.log_source import log_source
+from fieldfit.field.long_ends import mean_changes
 from fieldfit.field.long_noise import noise_of_totals
 from fieldfit.field.long_rows import LongRows, LongSource, long_rows
 from fieldfit.field.long_screens import Blocks, blocks_of, screen_rows, witnesses
@@ -165,6 +166,7 @@ def _plateaus(
         end_s=totals.time_s[1],
         rows=totals.rows.astype(np.int64),
         flow_m3_s=totals.flow_m3_s,
+        flow_slope_m3_s2=rough.flow_slope_m3_s2 if block is not None else mean_changes(rows, segments, totals),
         pressure_pa=totals.pressure_pa,
         temperature_degc=np.where(np.isfinite(warm), warm, rough.temperature_degc),
         random_pa=np.array([part.standard_pa for part in noise]),

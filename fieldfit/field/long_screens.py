@@ -7,7 +7,6 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.field.clock import repeated_or_backwards
 from fieldfit.field.log import Log
 from fieldfit.field.long_rows import LongRows
 from fieldfit.field.row_screens import ROW_SCREENS, still_below
@@ -105,35 +104,34 @@ class _Latest:
         self._rows, self._before, self._latest = rows, -np.inf, -np.inf
 
     def not_later(self, time: Array, stop: int) -> Mask:
-        """Return which of the next rows are not later than every row before them; `stop` is the row after them."""
-        shown = np.concatenate([[self._latest, self._before], time, [self._after(stop)]])
-        known = time[np.isfinite(time)]
-        steps = np.diff(shown[1:][np.isfinite(shown[1:])])
-        wrong = (
-            np.zeros(len(time), dtype=np.bool_)
-            if np.all(steps > 0.0) and self._before >= self._latest
-            else self._judged(shown)
-        )
-        sound = time[~wrong & np.isfinite(time)]
-        self._latest = max(self._latest, float(sound[-1])) if sound.size else self._latest
-        self._before = float(known[-1]) if known.size else self._before
+        """Return which of the next rows are not later than every row before them; `stop` is the row after them.
+
+        The same as `clock.repeated_or_backwards`, with what came before and what comes after in mind.
+        """
+        wrong = np.zeros(len(time), dtype=np.bool_)
+        known = np.isfinite(time)
+        times = time if known.all() else time[known]
+        if times.size == 0:
+            return wrong
+        if times[0] > self._before >= self._latest and np.all(times[1:] > times[:-1]):
+            after = self._after(stop)
+            if times[-1] < after:
+                self._before = self._latest = float(times[-1])
+                return wrong
+        before, after_each = np.append(self._before, times[:-1]), np.append(times[1:], self._after(stop))
+        ahead = (times > after_each) & (before < after_each)
+        latest = np.maximum.accumulate(np.append(self._latest, np.where(ahead, -np.inf, times)))
+        wrong[known] = ahead | (times <= latest[:-1])
+        self._before, self._latest = float(times[-1]), float(latest[-1])
         return wrong
 
-    def _judged(self, shown: Array) -> Mask:
-        """Judge rows between what came before and what comes after."""
-        times = np.where(np.isinf(shown), np.nan, shown)
-        if times[1] <= times[0]:
-            # The row before was itself wrong: it is no measure for what follows.
-            times[1] = np.nan
-        return repeated_or_backwards(times)[2:-1]
-
     def _after(self, stop: int) -> float:
-        """Return the next time that is known."""
+        """Return the next time that is known, infinity for none."""
         for first, end in self._rows.store.spans(first=stop):
             time = self._rows.store.read("time", first, min(end, first + 1000))
             if np.any(np.isfinite(time)):
                 return float(time[np.isfinite(time)][0])
-        return np.nan
+        return np.inf
 
 
 class _Frozen:

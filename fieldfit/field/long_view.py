@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -11,7 +13,7 @@ from fieldfit.field.long_screens import CODE, Blocks
 from fieldfit.field.long_segments import Segments
 from fieldfit.field.readings import Screening
 from fieldfit.field.row_runs import RowRuns, RunCounter
-from fieldfit.field.screens import UNSTEADY
+from fieldfit.field.screens import CLOCK, MISSING, UNSTEADY
 
 Whole = NDArray[np.int64]
 
@@ -20,6 +22,7 @@ WINDOWS = 1000
 EVEN = 10
 """Evenly spaced rows of a window that are shown."""
 _REASONS = np.array([reason for reason, _ in sorted(CODE.items(), key=lambda item: item[1])])
+_AT_ONCE = (CODE[MISSING], CODE[CLOCK])
 _FATES = 64
 
 
@@ -45,6 +48,7 @@ def view(rows: LongRows, blocks: Blocks, fates: Screening, segments: Segments) -
         Their fates, and runs that hold every row.
     """
     width = max(-(-rows.store.rows // WINDOWS), 1)
+    time_block = _time_blocks(rows, blocks, fates)
     by_block = _block_codes(rows, blocks, fates)
     counter = RunCounter()
     taken: list[dict[str, NDArray[np.generic]]] = []
@@ -61,9 +65,10 @@ def view(rows: LongRows, blocks: Blocks, fates: Screening, segments: Segments) -
         counter.add(fate, columns["line"], columns["time"])
         shown = _shown([columns[name] for name in rows.channels], fate, width)
         taken.append({name: values[shown] for name, values in columns.items()} | {"fate": fate[shown]})
+        taken[-1]["block"] = time_block[(first + shown) // blocks.width]
     table = {name: np.concatenate([part[name] for part in taken]) for name in taken[0]}
-    runs = _runs(counter)
-    return _log(rows, blocks, table), _screening(table, runs)
+    screening = _screening(table, _runs(counter))
+    return _log(rows, blocks, table), screening if fates.block is not None else replace(screening, block=None)
 
 
 def _block_codes(rows: LongRows, blocks: Blocks, fates: Screening) -> Whole:
@@ -73,6 +78,14 @@ def _block_codes(rows: LongRows, blocks: Blocks, fates: Screening) -> Whole:
         if reason:
             codes[place] = CODE[reason]
     return codes
+
+
+def _time_blocks(rows: LongRows, blocks: Blocks, fates: Screening) -> Whole:
+    """Return the time block of a service log that each block belongs to; 0 for none."""
+    found = np.zeros(-(-rows.store.rows // blocks.width), dtype=np.int64)
+    if fates.block is not None:
+        found[blocks.place] = fates.block
+    return found
 
 
 def _shown(channels: list[NDArray[np.float64]], fate: Whole, width: int) -> Whole:
@@ -110,8 +123,11 @@ def _runs(counter: RunCounter) -> RowRuns:
 def _log(rows: LongRows, blocks: Blocks, table: dict[str, NDArray[np.generic]]) -> Log:
     """Return the shown rows as a log."""
     values = {
-        name: np.asarray(column, dtype=np.float64) for name, column in table.items() if name not in {"line", "fate"}
+        name: np.asarray(column, dtype=np.float64)
+        for name, column in table.items()
+        if name not in {"line", "fate", "block"}
     }
+    code = table["fate"].astype(np.int64) % _FATES
     return Log(
         file=blocks.log.file,
         sha256="",
@@ -124,7 +140,7 @@ def _log(rows: LongRows, blocks: Blocks, table: dict[str, NDArray[np.generic]]) 
         temperature_degc=values.get("temperature"),
         flow_step_m3_s=float(rows.steps[0]),
         pressure_step_pa=rows.steps[1:],
-        reason=_REASONS[table["fate"].astype(np.int64) % _FATES],
+        reason=_REASONS[np.where(np.isin(code, _AT_ONCE), code, 0)],
         rows_in_file=rows.store.rows,
     )
 
@@ -132,4 +148,11 @@ def _log(rows: LongRows, blocks: Blocks, table: dict[str, NDArray[np.generic]]) 
 def _screening(table: dict[str, NDArray[np.generic]], runs: RowRuns) -> Screening:
     """Return the fates of the shown rows, with the runs of all."""
     fate = table["fate"].astype(np.int64)
-    return Screening(reason=_REASONS[fate % _FATES], plateau=fate // _FATES, counts=runs.counts, runs=runs)
+    plateau = fate // _FATES
+    return Screening(
+        reason=_REASONS[fate % _FATES],
+        plateau=plateau,
+        counts=runs.counts,
+        block=np.where(plateau > 0, table["block"].astype(np.int64), 0),
+        runs=runs,
+    )
