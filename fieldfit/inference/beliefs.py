@@ -55,7 +55,7 @@ BELIEFS: dict[str, Belief] = {
     "meter error": Belief(
         0.05,
         "gain normal with 3 times what is stated or 5 %, with 15 % or with 40 %; zero normal with 1 or 6 % of the largest flow",
-        "wrong meter factor, worn parts, bad mounting; a low-flow cut-off acts as a zero",
+        "wrong meter factor, worn parts, bad mounting; a low-flow cut-off hides a flow, also during a static",
     ),
     "wrong unit or swapped channel": Belief(
         0.02,

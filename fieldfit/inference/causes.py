@@ -41,6 +41,13 @@ PLACES = (0.0, 0.25, 0.5, 0.75)
 RIPPLE = 0.6
 """Width over spacing of the normal parts that a log-uniform prior is made of: it ripples by 0.2 % [-]."""
 
+CUT_OFFS = (0.02, 0.05, 0.1)
+"""Flows that a meter may not show, as shares of the largest [-]."""
+CUT_OFF_EXPONENT = 1.85
+"""Power of the flow that head loss roughly goes with, for a flow that is not known anyway [-]."""
+CUT_OFF = "low-flow cut-off: water ran unseen during the static"
+"""What such a trial stands for."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Hypothesis:
@@ -217,12 +224,18 @@ def _leak(setting: _Setting) -> Built:
 
 
 def _meter(setting: _Setting) -> Built:
-    accuracy = setting.readings.meter.accuracy.standard_at(setting.readings.flow_m3_s)
-    stated = float(np.min(accuracy / np.abs(setting.readings.flow_m3_s)))
-    parts = setting.blank(5)
+    readings = setting.readings
+    accuracy = readings.meter.accuracy.standard_at(readings.flow_m3_s)
+    stated = float(np.min(accuracy / np.abs(readings.flow_m3_s)))
+    unseen = CUT_OFFS if readings.levelling else ()
+    parts = setting.blank(5 + len(unseen))
     parts["spread"][:3, GAIN] = (max(3.0 * stated, 0.05), 0.15, 0.4)
-    parts["spread"][3:, ZERO] = np.array([0.01, 0.06]) * setting.top_flow
-    return parts, ()
+    parts["spread"][3:5, ZERO] = np.array([0.01, 0.06]) * setting.top_flow
+    for row, share in enumerate(unseen, start=5):
+        # The static was taken off every reading, and with it what the unseen flow loses.
+        loss = share**CUT_OFF_EXPONENT * float(np.max(np.abs(readings.head_loss_m)))
+        parts["centre"][row, OFFSET], parts["spread"][row, OFFSET] = -loss, 0.5 * loss
+    return parts, ("",) * 5 + (CUT_OFF,) * len(unseen)
 
 
 def _units(setting: _Setting) -> Built:

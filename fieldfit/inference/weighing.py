@@ -194,10 +194,10 @@ def _weighed(
 
 def _options(names: tuple[str, ...], weight: Array) -> str:
     """Return the most probable of several discrete faults, and those nearly as probable."""
-    if not names:
+    if not names or not names[int(np.argmax(weight))]:
         return ""
     order = [index for index in np.argsort(-weight) if weight[index] >= NEARLY][:MOST_OPTIONS]
-    return "; or ".join(dict.fromkeys(names[index] for index in order))
+    return "; or ".join(dict.fromkeys(names[index] for index in order if names[index]))
 
 
 def _size(column: int, trials: Trials, u: Array, parts: tuple[Array, Array]) -> Size:

@@ -140,6 +140,8 @@ def _one_gauge(readings: ReachReadings, drop: float) -> list[Option]:
     at_both = readings.levelling.pressure_pa if readings.levelling else (0.0, 0.0)
     weight = readings.density_kg_m3 * STANDARD_GRAVITY
     share = SHARES["one"] / (4.0 * len(PRESSURE_RATIOS))
+    if not _two_gauges(readings):
+        return []
     for end, tap, sign in ((0, readings.upstream, 1.0), (1, readings.downstream, -1.0)):
         sound = (readings.pressure_pa[1 - end] - at_both[1 - end]) / weight
         for name, ratio in _both_ways(PRESSURE_RATIOS):
@@ -157,9 +159,14 @@ def _one_gauge(readings: ReachReadings, drop: float) -> list[Option]:
     return found
 
 
+def _two_gauges(readings: ReachReadings) -> bool:
+    """Return whether each tap has a gauge of its own: a transmitter of the difference stands at one, zero at the other."""
+    return bool(np.all(np.any(readings.pressure_pa != 0.0, axis=1)))
+
+
 def _absolute(readings: ReachReadings) -> list[Option]:
     """Return one gauge reading absolute pressure; a static would have taken it off."""
-    if readings.levelling:
+    if readings.levelling or not _two_gauges(readings):
         return []
     step = ATMOSPHERE_PA / (readings.density_kg_m3 * STANDARD_GRAVITY)
     return [

@@ -12,6 +12,7 @@ from fieldfit.field.section import Correlation
 from fieldfit.hydraulics.friction_laws import LAWS
 from fieldfit.inference.explanations import explain
 from fieldfit.inference.telling_apart import apart
+from fieldfit.inference.wrong_units import options
 
 PLANT = PLACES["plant line"]
 STEEL = (2e-5, 1e-4)
@@ -162,3 +163,30 @@ def test_curves_of_one_cause_do_not_part_from_themselves():
     first = found.ranked[0].fitted
     wide = found.conditions.at(np.array([1e-4, 1e-3, 1e-2]))
     assert apart(first, first, wide, np.full(3, 0.01)) == pytest.approx(np.zeros(3))
+
+
+def test_water_that_ran_unseen_during_the_static_is_laid_to_the_meter():
+    """A meter with a low-flow cut-off shows zero while 8 % of the largest flow runs: the levelling takes its loss off."""
+    readings = take_readings(PLANT, NOTHING, draw(np.random.default_rng(6), PLANT), True)
+    unseen = 0.08**1.85 * readings.head_loss_m[-1]
+    found = explain(replace(readings, head_loss_m=readings.head_loss_m - unseen), Correlation(), STEEL)
+    meter = next(one for one in found.ranked if one.causes == ("meter error",))
+    assert not found.nothing_unusual
+    assert found.ranked[0] is meter or "meter error" in found.alike
+    assert "low-flow cut-off" in meter.option
+    assert meter.sizes[0].low < -unseen < meter.sizes[0].high
+    sound = explain(readings, Correlation(), STEEL)
+    assert sound.nothing_unusual
+
+
+def test_a_transmitter_of_the_difference_has_no_gauge_of_the_wrong_unit_at_its_other_end():
+    readings = make_readings(levelled=False)
+    one = replace(readings, pressure_pa=np.array([9790.0 * readings.head_loss_m, np.zeros(6)]))
+    names = {trial for trial in options_of(one) if "gauge " in trial}
+    assert names == set()
+    assert any("gauge upstream" in name for name in options_of(readings))
+
+
+def options_of(readings):
+    """Names of all mistakes that are tried."""
+    return [option.name for option in options(readings)]
