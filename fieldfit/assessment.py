@@ -30,7 +30,7 @@ from fieldfit.inference.explanations import explain, new_roughness
 from fieldfit.progress import tell
 from fieldfit.report.cautions import cautions
 from fieldfit.report.finding import CampaignFinding, Finding, ReachFinding
-from fieldfit.report.survey_cautions import survey_cautions
+from fieldfit.report.survey_cautions import deposit_cautions, survey_cautions
 
 
 def assess(section: str | Path | Section, *logs: str | Path) -> Finding:
@@ -84,15 +84,17 @@ def assess_campaign(section: Section, path: Path, date: dt.date | None) -> Campa
     reaches = tuple(
         _assess_reach(section_of_reach(section, k), of_reach, every[k]) for k, of_reach in enumerate(readings)
     )
+    reaches = tuple(with_deposit(section, plateaus, one, k) for k, one in enumerate(reaches))
     together = survey_of(section, plateaus, (log, screening)) if len(section.taps) > 2 else None
     return CampaignFinding(
         date=date or (log.start.date() if log.start else None),
         log=log,
         screening=screening,
         plateaus=plateaus,
-        reaches=tuple(with_deposit(section, plateaus, one, k) for k, one in enumerate(reaches)),
+        reaches=reaches,
         cautions=(
             *survey_cautions(section, plateaus, together),
+            *deposit_cautions(reaches),
             *cautions(section, log, screening, plateaus, reaches),
         ),
         survey=together,
@@ -113,6 +115,9 @@ def read_campaign(section: Section, path: Path) -> tuple[Log, Screening, Plateau
 def logs_to_read(section: Section, given: tuple[str | Path, ...]) -> list[tuple[Path, dt.date | None]]:
     """Return the logs to read with their dates: those given, else the section's campaigns, else the only CSV file."""
     if given:
+        twice = next((path for path in given if list(given).count(path) > 1), None)
+        if twice is not None:
+            raise InputError("this log is named twice", "Name each log once.", str(twice))
         return [(Path(path), None) for path in given]
     if section.campaigns:
         return [(campaign.log, campaign.date) for campaign in section.campaigns]
