@@ -71,7 +71,7 @@ def test_pitots_at_two_hydrants_are_summed(tmp_path):
     assert read_log(log, known).flow_m3_s / GPM == pytest.approx(gpm, rel=6e-4)
     wall = assess(known, log).campaigns[0].reaches[0].wall
     assert wall.state == "measured"
-    assert wall.hazen_williams_c.best == pytest.approx(110.0, rel=0.02)
+    assert wall.hazen_williams_c.best == pytest.approx(110.0, rel=0.05)
     assert wall.budget[0].error in {"meter gain", "friction correlation"}
 
 
