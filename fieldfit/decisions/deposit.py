@@ -10,15 +10,19 @@ from numpy.typing import NDArray
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import BoreEvidence, Section
 from fieldfit.field.uncertain import Uncertain
+from fieldfit.hydraulics.friction import colebrook_white
 from fieldfit.hydraulics.materials import material
 from fieldfit.inference.bore_evidence import unevenness
-from fieldfit.inference.bore_or_roughness import SMOOTHEST_M, BoreMap, at_roughness, bore_map, quantiles
+from fieldfit.inference.bore_or_roughness import SMOOTHEST_M, BoreMap, bore_map, quantiles
+from fieldfit.inference.fit import NORMAL_95
 from fieldfit.inference.head_model import head_model
 from fieldfit.inference.wall import Band, Span, Wall
 
 Array = NDArray[np.float64]
 
 SHARES = (0.5, 0.025, 0.975)
+SUBSTITUTIONS = 60
+"""Steps after which the bore of a new wall stands still; each leaves a tenth of the error."""
 NODES = 25
 """Points over a stated error where a result is worked out for all of them."""
 
@@ -41,8 +45,8 @@ class DepositFinding:
     """What readings and evidence say of both at once."""
     all_roughness_m: Band
     """Roughness if the bore were as laid [m]."""
-    all_bore_m: Interval | None
-    """Bore if the wall were as new [m]; None where no bore on the map fits."""
+    all_bore_m: Interval
+    """Bore that a wall as new would need to lose what was lost at the flow of the results [m]."""
     new_wall: str
     """What "as new" means there: a material, or a smooth wall where it is unknown."""
     bore_m: Interval
@@ -87,13 +91,11 @@ def deposit(
     variation = section.deposit.variation
     found = bore_map(model, ln_friction, section.correlation, evidence, variation)
     new = material(section.material) if section.material else None
-    low, _, high = new.roughness_m if new else (SMOOTHEST_M, SMOOTHEST_M, SMOOTHEST_M)
-    all_bore = at_roughness(found, (low, high))
     parts = _deposit(found, readings.bore, variation)
     return DepositFinding(
         map=found,
         all_roughness_m=wall.roughness_m,
-        all_bore_m=Interval(best=all_bore[0], ends=all_bore[1]) if all_bore else None,
+        all_bore_m=_all_bore(readings, wall, new.roughness_m if new else (SMOOTHEST_M,) * 3),
         new_wall=f"new {new.name}" if new else "a smooth wall",
         bore_m=_interval(found.bore_m, found.bores()),
         roughness_m=_wall_interval(found),
@@ -101,6 +103,34 @@ def deposit(
         volume_m3_m=_interval(parts[1], parts[2]),
         mass_kg_m=_mass(parts[1], parts[2], section.deposit.density_kg_m3),
     )
+
+
+def _all_bore(readings: ReachReadings, wall: Wall, new_m: tuple[float, float, float]) -> Interval:
+    """Return the bore in which a new wall would lose what was lost at the flow of the results.
+
+    The loss goes with f/D⁵, or with f/D where the meter senses velocity and its flow with D². The laid bore's own
+    error drops out; the spread of new walls and the correlation's limit stay in.
+    """
+    laid = readings.bore.value
+    power = 1.0 if readings.meter.senses == "velocity" else 5.0
+    ends = wall.friction_factor.with_correlation or (0.0, 0.0)
+    whole = float(np.log(ends[1] / ends[0])) / (2.0 * NORMAL_95)
+    of_bore = sum(entry.standard**2 for entry in wall.budget if entry.error == "bore")
+    own = np.sqrt(max(whole**2 - of_bore, 1e-12)) / power
+    low, best, high = (_new_bore(wall, laid, roughness, power) for roughness in new_m)
+    below = np.hypot(NORMAL_95 * own, np.log(best / low))
+    above = np.hypot(NORMAL_95 * own, np.log(high / best))
+    return Interval(best=best, ends=(float(best * np.exp(-below)), float(best * np.exp(above))))
+
+
+def _new_bore(wall: Wall, laid_m: float, roughness_m: float, power: float) -> float:
+    """Return the bore that loses as much with a given roughness [m], by substitution."""
+    factor, bore = wall.friction_factor.best or 1.0, laid_m
+    for _ in range(SUBSTITUTIONS):
+        reynolds = wall.reynolds * (laid_m / bore if power > 1.0 else bore / laid_m)
+        now = float(colebrook_white(reynolds, min(roughness_m / bore, 0.5)))
+        bore = laid_m * (now / factor) ** (1.0 / power)
+    return bore
 
 
 def _ln_friction(wall: Wall) -> float | None:

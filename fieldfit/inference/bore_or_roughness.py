@@ -20,7 +20,6 @@ from fieldfit.inference.bore_evidence import Weighed, log_likelihood, weigh
 from fieldfit.inference.friction_curve import TURBULENT_LAW_FROM
 from fieldfit.inference.head_model import HeadModel, friction_by_definition
 from fieldfit.inference.shared_errors import SHAPE
-from fieldfit.inference.wall import Span
 
 Array = NDArray[np.float64]
 
@@ -145,23 +144,6 @@ def quantiles(values: Array, probability: Array, shares: tuple[float, ...]) -> t
     order = np.argsort(values)
     below = np.cumsum(probability[order]) - 0.5 * probability[order]
     return tuple(float(part) for part in np.interp(shares, below, values[order]))
-
-
-def at_roughness(found: BoreMap, roughness_m: Span) -> tuple[float, Span] | None:
-    """Return the bore, with its 95 % interval, that the readings ask for where the roughness lies in a range [m].
-
-    None when none on the map fits.
-    """
-    low, high = (float(np.clip(r, found.roughness_m[0], found.roughness_m[-1])) for r in roughness_m)
-    inside = (found.roughness_m >= low * 0.96) & (found.roughness_m <= high * 1.04)
-    if not np.any(inside):
-        inside[int(np.argmin(np.abs(np.log(found.roughness_m / np.sqrt(low * high)))))] = True
-    rows = found.by_readings[:, inside]
-    total = float(np.sum(rows))
-    if total <= 0.0:
-        return None
-    best = quantiles(found.bore_m, np.sum(rows, axis=1) / total, (0.5, 0.025, 0.975))
-    return best[0], (best[1], best[2])
 
 
 def exact_shape(model: HeadModel, bore_m: float, roughness_m: float) -> Exact:

@@ -19,6 +19,8 @@ Array = NDArray[np.float64]
 STEPS = 40
 TOLERANCE = 1e-6
 """Step under which the search has arrived [standard deviations]."""
+SMOOTHEST = 4.0
+"""How far under the smooth pipe's ln f a wall is followed where a reach seems to gain head [-]."""
 LARGEST_STEP = 0.5
 """Largest change of ln f in one step [-]."""
 
@@ -220,8 +222,9 @@ def _moved(model: SurveyModel, layout: Layout, at: _Point, step: Array) -> _Poin
     if model.pipe.unknown_branch is not None:
         largest = 0.95 * float(np.min(model.readings.flow_m3_s))
         branch, rest = float(np.clip(branch + step[rest], -largest, largest)), rest + 1
+    lowest = np.log(smooth(model.pipe.reference_reynolds[firsts])) - SMOOTHEST
     return _Point(
-        np.minimum(at.ln_friction + step[:walls], highest),
+        np.clip(at.ln_friction + step[:walls], lowest, highest),
         at.local_k + step[walls : walls + local],
         branch,
         at.u + step[rest:],

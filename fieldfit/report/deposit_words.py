@@ -42,7 +42,7 @@ def readings_table(found: DepositFinding) -> Table:
         rough = f"under {limit(high)}" if wall.best is None else value_with_band(wall.best * 1e3, (low, high))
     rows = [
         ("all roughness", rough, laid),
-        ("all bore", f"as {found.new_wall}", "no bore fits" if found.all_bore_m is None else _span(found.all_bore_m)),
+        ("all bore", f"as {found.new_wall}", _span(found.all_bore_m)),
         ("any mixture of the two", _roughness(found.roughness_m), _span(found.bore_m)),
     ]
     head = ("the loss read as", "roughness [mm], 95 %", "bore [mm], 95 %")

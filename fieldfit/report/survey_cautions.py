@@ -10,7 +10,7 @@ from fieldfit.field.readings import Plateaus
 from fieldfit.field.section import Section
 from fieldfit.inference.survey_finding import Survey
 from fieldfit.report.digits import fixed, litres, significant
-from fieldfit.report.finding import Caution
+from fieldfit.report.finding import Caution, ReachFinding
 
 PULL = 2.5
 """Standard uncertainties by which a stated accuracy may be exceeded in the fit."""
@@ -38,6 +38,32 @@ def survey_cautions(section: Section, plateaus: Plateaus, found: Survey | None) 
         Most weighty first.
     """
     told = [*_rising(section, found), *_dead(section, plateaus), *_pulls(found), *_branches(section, found)]
+    return tuple(told)
+
+
+def deposit_cautions(reaches: tuple[ReachFinding, ...]) -> tuple[Caution, ...]:
+    """Return what to say of bore evidence that contradicts the readings.
+
+    Parameters
+    ----------
+    reaches : tuple of ReachFinding
+        What was found of each reach.
+
+    Returns
+    -------
+    tuple of Caution
+    """
+    told = []
+    for reach in reaches:
+        prefix = f"{reach.readings.upstream.column} to {reach.readings.downstream.column}: " if len(reaches) > 1 else ""
+        for one in reach.deposit.map.evidence if reach.deposit else ():
+            if not one.used:
+                bore = significant(1e3 * one.evidence.bore.value)
+                text = (
+                    f"{prefix}The {one.evidence.kind}'s bore of {bore} mm contradicts the readings at any roughness and was left "
+                    "out of the deposit. One of the two is wrong: check its place and unit, the bore as laid, and the meter."
+                )
+                told.append(Caution(about="bore", text=text))
     return tuple(told)
 
 
