@@ -9,6 +9,7 @@ from fieldfit.field.reaches import ReachHeads
 from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Section, Tap
 from fieldfit.inference.wall import Band, BudgetEntry
+from fieldfit.report.device_rows import device_rows
 from fieldfit.report.digits import (
     COVERAGE,
     fixed,
@@ -226,7 +227,8 @@ def inputs(section: Section) -> tuple[Row, ...]:
         ),
         ("Flow meter", f"{_column(meter.column, meter.serial)}, {meter.accuracy.text}; it senses {meter.senses}"),
     ]
-    told += [(f"Tap {index}", _tap(tap)) for index, tap in enumerate(section.taps, start=1)]
+    told += [(f"Tap {index}", _tap(tap, section)) for index, tap in enumerate(section.taps, start=1)]
+    told += device_rows(section)
     told += [
         (
             f"Fitting: {part.name}",
@@ -251,6 +253,8 @@ def _column(column: str, serial: str | None) -> str:
     return f"{column} ({serial})" if serial else column
 
 
-def _tap(tap: Tap) -> str:
+def _tap(tap: Tap, section: Section) -> str:
+    if section.differential is not None:
+        return f"{tap.column} at {known(tap.station)} m"
     height = "height not surveyed" if tap.elevation is None else f"height {known(tap.elevation)} m"
     return f"{_column(tap.column, tap.gauge)} at {known(tap.station)} m, {height}, {tap.accuracy.text}"
