@@ -21,6 +21,7 @@ from fieldfit.field.section_outlook import section_on
 from fieldfit.report.screening.finding import CampaignScreen, ReachScreen, ScreenFinding
 from fieldfit.report.screening.log_checks import log_checks
 from fieldfit.report.screening.reach_checks import reach_checks
+from fieldfit.report.screening.static_checks import static_checks
 
 
 def screen_logs(section: str | Path | Section, *logs: str | Path) -> ScreenFinding:
@@ -67,7 +68,10 @@ def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignScr
         plateaus=plateaus,
         steps=steps,
         reaches=reaches,
-        checks=log_checks(log, screening, plateaus, reaches, steps),
+        checks=(
+            *log_checks(log, screening, plateaus, reaches, steps),
+            *static_checks(log, screening, plateaus, reaches, section),
+        ),
     )
 
 

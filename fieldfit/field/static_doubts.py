@@ -69,8 +69,9 @@ def static_doubts(log: Log, screening: Screening, plateaus: Plateaus, section: S
     tuple of StaticDoubt
     """
     found: list[StaticDoubt] = []
-    # A log too long for memory keeps no rows to look within.
-    if log.kind == "logger" and screening.plateau.shape == log.time_s.shape:
+    # A service log's statics are gathered from many days, and one too long for memory keeps no rows to look within.
+    in_steps = log.kind == "logger" and screening.block is None
+    if in_steps and screening.plateau.shape == log.time_s.shape:
         for number in plateaus.number[plateaus.static]:
             rows = np.flatnonzero(screening.plateau == number)
             if len(rows) >= ROWS:
