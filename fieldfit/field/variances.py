@@ -44,12 +44,12 @@ def pooled_variance(variance: Array, freedom: Array) -> Array:
     """
     from scipy.special import digamma, polygamma
 
-    if variance.size < FEWEST or not np.any(variance > 0.0):
+    # A stretch in which a display stood still has no variance and no logarithm: it borrows, and lends nothing.
+    seen = variance > 0.0
+    if np.count_nonzero(seen) < FEWEST:
         return variance
-    # A stretch in which a display stood still has no variance and no logarithm.
-    floor = 1e-3 * float(np.median(variance[variance > 0.0]))
-    half = freedom / 2.0
-    level = np.log(np.maximum(variance, floor)) - digamma(half) + np.log(half)
+    half = freedom[seen] / 2.0
+    level = np.log(variance[seen]) - digamma(half) + np.log(half)
     excess = float(np.var(level, ddof=1) - np.mean(polygamma(1, half)))
     prior = min(2.0 * _inverse_trigamma(excess), MOST) if excess > 0.0 else MOST
     common = float(np.exp(np.mean(level) + digamma(prior / 2.0) - np.log(prior / 2.0)))
