@@ -42,9 +42,9 @@ def device_rows(section: Section) -> list[Row]:
             )
         )
     if section.differential is not None:
-        one = section.differential
-        hose = one.hose_temperature
+        between = section.differential
+        hose = between.hose_temperature
         lines = "the main's water" if hose is None else f"water of {fixed(hose.value, 1)} °C"
-        name = f"{one.column} ({one.serial})" if one.serial else one.column
-        told.append(("Transmitter between the taps", f"{name}, {one.accuracy.text}; its lines hold {lines}"))
+        name = f"{between.column} ({between.serial})" if between.serial else between.column
+        told.append(("Transmitter between the taps", f"{name}, {between.accuracy.text}; its lines hold {lines}"))
     return told
