@@ -63,7 +63,7 @@ def test_pitots_at_two_hydrants_are_summed(tmp_path):
     gpm = 29.84 * 6.25 * (0.9 * np.sqrt(pitots[:, 0]) + 0.8 * np.sqrt(pitots[:, 1]))
     # Hazen–Williams, psi per foot (NFPA 13), at a C of 110.
     loss = 300.0 / 0.3048 * 4.52 * gpm**1.85 / (110.0**1.85 * 6.0**4.87)
-    rows = [f"{a:g},{b:g},80.0,{80.0 - fall:.1f}" for (a, b), fall in zip(pitots, loss, strict=True)]
+    rows = [f"{a:g},{b:g},140.0,{140.0 - fall:.1f}" for (a, b), fall in zip(pitots, loss, strict=True)]
     log = tmp_path / "log.csv"
     log.write_text(
         "\n".join(["pitot A [psi],pitot B [psi],upstream [psi],downstream [psi]", *rows]) + "\n", encoding="utf-8"
