@@ -19,7 +19,7 @@ from fieldfit.report.device_rows import device_rows
 from fieldfit.report.page import page
 from fieldfit.report.record import record
 from fieldfit.report.screening.page import screen_page
-from fieldfit.screening import screen
+from fieldfit.screening import screen_logs
 
 AREA = np.pi / 4.0 * 0.15**2
 
@@ -73,7 +73,7 @@ def test_page_shows_sentences_and_evidence(finding):
 
 
 def test_screening_page_shows_them_too(folder):
-    text = screen_page(screen(folder))
+    text = screen_page(screen_logs(folder))
     assert "Loggers on one clock" in text
     assert "The clock of far (end).csv is" in text
 
