@@ -15,6 +15,8 @@ Array = NDArray[np.float64]
 Rows = NDArray[np.int64]
 
 HOUR_S = 3600.0
+SMALLEST_STEP, VISIBLE_STEP = 0.5, 3.0
+"""Steps between plateaus that part two flows a crew has set, in smallest steps: no step at all, or one that is seen."""
 GROUPS = 12
 """Most groups of flow."""
 NARROWEST = 0.03
@@ -28,7 +30,7 @@ def is_service_log(log: Log, section: Section, plateau: Rows) -> bool:
 
     A test is stepped: the flow stands still most of the time. Service flow wanders with demand, and what passes for
     plateaus are pieces of its slow rise and fall. So a long log counts as a service log when less than half of its
-    flowing rows lie on plateaus whose flow stays put.
+    flowing rows lie on plateaus whose flow stays put and stands apart from the flow before and after.
 
     Parameters
     ----------
@@ -45,12 +47,28 @@ def is_service_log(log: Log, section: Section, plateau: Rows) -> bool:
     if not np.any(known) or float(np.ptp(log.time_s[known])) < limit(section, "service_hours") * HOUR_S:
         return False
     moving = (np.abs(log.flow_m3_s) >= still_below(log, section)) & (log.reason == "")
-    steady = 0
-    for number in np.unique(plateau[(plateau > 0) & moving]):
-        rows = np.flatnonzero(plateau == number)
-        if change(log, rows) < limit(section, "flow_step") / 2.0 * abs(float(np.mean(log.flow_m3_s[rows]))):
-            steady += len(rows)
+    members = [np.flatnonzero(plateau == number) for number in np.unique(plateau[(plateau > 0) & moving])]
+    steady = sum(
+        len(rows)
+        for rows, wanders in zip(members, _wanders(log, section, members), strict=True)
+        if not wanders
+        and change(log, rows) < limit(section, "flow_step") / 2.0 * abs(float(np.mean(log.flow_m3_s[rows])))
+    )
     return bool(steady < limit(section, "service_steady") * np.count_nonzero(moving))
+
+
+def _wanders(log: Log, section: Section, members: list[Rows]) -> NDArray[np.bool_]:
+    """Return which plateaus lie a small step from one beside them.
+
+    A crew steps the flow so that one sees it, or comes back to the same flow; what is a little off the flow before
+    is a piece of a wandering one, however steady a noisy meter makes it look.
+    """
+    if not members:
+        return np.zeros(0, dtype=np.bool_)
+    level = np.log([max(abs(float(np.mean(log.flow_m3_s[rows]))), 1e-300) for rows in members])
+    apart = np.abs(np.diff(level)) / limit(section, "flow_step")
+    small = (apart > SMALLEST_STEP) & (apart < VISIBLE_STEP)
+    return np.asarray(np.append(small, False) | np.append(False, small))
 
 
 def group_service_log(log: Log, section: Section, good: Rows) -> tuple[Rows, Rows, Rows]:
