@@ -7,6 +7,7 @@ every row (in runs), and plateaus whose means and noise come from all rows.
 from __future__ import annotations
 
 from collections.abc import Callable
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import replace
 from pathlib import Path
 
@@ -135,10 +136,11 @@ def _judged(rows: LongRows, log: LongSource, weight_pa_m: float, told: Tell) -> 
     if fates.block is None:
         set_outliers_aside(rows, segments, section)
     told(0.8)
-    pieces = pieces_of(rows, segments, blocks.width)
-    plateaus = _plateaus(rows, section, (blocks, fates, segments, pieces), weight_pa_m)
-    told(0.95)
-    return *view(rows, blocks, fates, segments), plateaus
+    with ThreadPoolExecutor(1) as beside:
+        shown = beside.submit(view, rows, blocks, fates, segments)
+        pieces = pieces_of(rows, segments, blocks.width)
+        plateaus = _plateaus(rows, section, (blocks, fates, segments, pieces), weight_pa_m)
+        return *shown.result(), plateaus
 
 
 def _plateaus(

@@ -6,6 +6,7 @@ import contextlib
 import errno
 import shutil
 import tempfile
+import threading
 from collections.abc import Iterator, Mapping
 from types import TracebackType
 from typing import IO, Any
@@ -54,6 +55,7 @@ class RowStore:
                 _ADVICE,
             )
         self.rows = 0
+        self._reading = threading.Lock()
         self._kinds = {name: np.dtype(kind) for name, kind in kinds.items()}
         self._files: dict[str, IO[bytes]] = {}
         with contextlib.ExitStack() as files:
@@ -95,10 +97,11 @@ class RowStore:
         kind = self._kinds[name]
         values = np.empty(max(min(stop, self.rows) - first, 0), dtype=kind)
         file = self._files[name]
-        file.seek(first * kind.itemsize)
         wanted = values.data.cast("B") if values.size else memoryview(b"")
-        while len(wanted):
-            wanted = wanted[file.readinto(wanted) :]  # type: ignore[attr-defined]
+        with self._reading:
+            file.seek(first * kind.itemsize)
+            while len(wanted):
+                wanted = wanted[file.readinto(wanted) :]  # type: ignore[attr-defined]
         return values.astype(_WIDE.get(kind, kind), copy=False)
 
     def spans(self, multiple: int = 1, first: int = 0, stop: int | None = None) -> Iterator[tuple[int, int]]:
