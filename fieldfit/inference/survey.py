@@ -20,6 +20,7 @@ from fieldfit.inference.survey_fit import (
     widened_noise,
 )
 from fieldfit.inference.survey_model import PER_K, SurveyModel, survey_model
+from fieldfit.inference.survey_suspect import suspect
 from fieldfit.inference.survey_wall import Place, SurveyWall, survey_wall
 from fieldfit.inference.wall import Band
 
@@ -27,6 +28,8 @@ Array = NDArray[np.float64]
 
 SEEN = 3.29
 """Standard uncertainties a local loss must reach to be seen 19 times in 20 with one false alarm in 20, one-sided."""
+DISAGREE = 3.0
+"""Reduced χ² from which a single tap that is off is looked for."""
 CLOSE = 10.0
 """Ratio of probabilities within which two explanations cannot be told apart."""
 LIKELY = 0.03
@@ -72,6 +75,7 @@ def survey(readings: SurveyReadings, limit: Correlation) -> Survey:
         side_flow=_side_flow(one, free),
         reduced_chi_square=reduced,
         pulls=tuple(sorted(zip(model.errors.names, best.fit.u.tolist(), strict=False), key=lambda pull: -abs(pull[1]))),
+        suspect=suspect(model) if reduced is not None and reduced > DISAGREE else None,
         grade=grade_line(best.fit, one),
     )
 

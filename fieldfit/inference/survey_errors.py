@@ -102,6 +102,32 @@ def survey_errors(readings: SurveyReadings, pipe: SurveyPipe, limit: Correlation
     return SurveyErrors(names=tuple(found.names), **{key: found.table(key) for key in found.sizes})
 
 
+def with_more(errors: SurveyErrors, name: str, **effects: Array) -> SurveyErrors:
+    """Return the errors with more of one name behind them.
+
+    Parameters
+    ----------
+    errors : SurveyErrors
+        Those there are.
+    name : str
+        Name of all the new ones.
+    **effects : (N, …) arrays
+        What one standard deviation of each does, by the names of the tables; nothing elsewhere.
+
+    Returns
+    -------
+    SurveyErrors
+    """
+    count = len(next(iter(effects.values())))
+    tables = {
+        key: np.vstack([table, effects.get(key, np.zeros((count, table.shape[1])))])
+        for key in SurveyErrors.__slots__
+        if key != "names"
+        for table in (getattr(errors, key),)
+    }
+    return SurveyErrors(names=errors.names + (name,) * count, **tables)
+
+
 def _add_meter(found: _Collector, readings: SurveyReadings) -> None:
     """Add the meter's gain, zero and span, as for one reach."""
     accuracy, flow = readings.section.meter.accuracy, readings.flow_m3_s

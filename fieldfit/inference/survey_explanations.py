@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.hydraulics.friction import relative_roughness
-from fieldfit.inference.survey_errors import SurveyErrors
+from fieldfit.inference.survey_errors import with_more
 from fieldfit.inference.survey_fit import Layout, SurveyFit, common_walls, fit_survey, reach_friction, wall_of_roughness
 from fieldfit.inference.survey_model import SurveyModel
 
@@ -81,10 +81,10 @@ def explanations(model: SurveyModel, noise_m2: Array) -> list[Explanation]:
         _weighed("one wall", everywhere, one, PRIOR["one wall"]),
         _weighed("uneven wall", everywhere, uneven, PRIOR["uneven wall"]),
     ]
-    places = [reach for reach in everywhere if base.walls.count(base.walls[reach]) > 1 and _seen_alone(model, reach)]
+    gaps = _gaps(model, base)
+    places = [gap[0] for gap in gaps]
     single = [
-        _weighed("local loss", (reach,), fit_survey(model, Layout(base.walls, (reach,)), noise_m2, one), 1.0)
-        for reach in places
+        _weighed("local loss", gap, fit_survey(model, Layout(base.walls, gap[:1]), noise_m2, one), 1.0) for gap in gaps
     ]
     found += _shared_prior(single, "local loss")
     if single:
@@ -121,22 +121,29 @@ def _shared_prior(found: list[Explanation], cause: Cause) -> list[Explanation]:
     return [replace(one, prior=PRIOR[cause] / len(found)) for one in found]
 
 
-def _seen_alone(model: SurveyModel, reach: int) -> bool:
-    """Return whether taps on both sides of a reach were alive together at some flow."""
-    readings = model.readings
-    return bool(np.any((readings.upper == reach) & (readings.lower == reach + 1)))
+def _gaps(model: SurveyModel, base: Layout) -> list[tuple[int, ...]]:
+    """Return where a local loss may be: what lies between taps that gave readings, where more pipe of its kind does."""
+    seen = _seen(model)
+    gaps = [tuple(range(upper, lower)) for upper, lower in itertools.pairwise(seen)]
+    alike = [gap for gap in gaps if len({base.walls[reach] for reach in gap}) == 1]
+    return [gap for gap in alike if base.walls.count(base.walls[gap[0]]) > len(gap)]
+
+
+def _seen(model: SurveyModel) -> list[int]:
+    """Return the taps that gave readings, in order."""
+    return sorted({int(tap) for tap in (*model.readings.upper, *model.readings.lower)})
 
 
 def _stretches(model: SurveyModel, base: Layout) -> list[tuple[int, ...]]:
     """Return the stretches of one material that may be bad: shorter than the rest of it."""
-    length, walls = model.pipe.length_m, base.walls
+    length, walls, ends = model.pipe.length_m, base.walls, set(_seen(model))
     found = []
     for first, stop in itertools.combinations(range(len(walls) + 1), 2):
         stretch = tuple(range(first, stop))
         whole = [reach for reach in range(len(walls)) if walls[reach] == walls[first]]
         rest = [reach for reach in whole if reach not in stretch]
         alike = all(walls[reach] == walls[first] for reach in stretch)
-        seen = all(_seen_alone(model, reach) for reach in (first, stop - 1))
+        seen = {first, stop} <= ends
         if alike and seen and rest and len(stretch) <= LONGEST_STRETCH and _shorter(length, stretch, rest):
             found.append(stretch)
     return found
@@ -156,27 +163,10 @@ def _apart(base: Layout, stretch: tuple[int, ...]) -> Layout:
 
 def _with_uneven_walls(model: SurveyModel) -> SurveyModel:
     """Return the model in which every reach may differ a little from the common wall."""
-    errors, reaches = model.errors, len(model.pipe.bore_m)
-    plateaus = errors.ln_friction.shape[1] // reaches
-    more = UNEVEN * np.kron(np.eye(reaches), np.ones(plateaus))
-
-    def longer(table: Array) -> Array:
-        return np.vstack([table, np.zeros((reaches, table.shape[1]))])
-
-    return replace(
-        model,
-        errors=SurveyErrors(
-            names=errors.names + ("uneven wall",) * reaches,
-            flow_m3_s=longer(errors.flow_m3_s),
-            branch_m3_s=longer(errors.branch_m3_s),
-            ln_bore=longer(errors.ln_bore),
-            ln_length=longer(errors.ln_length),
-            ln_viscosity=longer(errors.ln_viscosity),
-            fitting_k=longer(errors.fitting_k),
-            head_m=longer(errors.head_m),
-            ln_friction=np.vstack([errors.ln_friction, more]),
-        ),
-    )
+    reaches = len(model.pipe.bore_m)
+    plateaus = model.errors.ln_friction.shape[1] // reaches
+    apart = np.asarray(UNEVEN * np.kron(np.eye(reaches), np.ones(plateaus)), dtype=np.float64)
+    return replace(model, errors=with_more(model.errors, "uneven wall", ln_friction=apart))
 
 
 def _weighed(cause: Cause, reaches: tuple[int, ...], fit: SurveyFit, prior: float) -> Explanation:

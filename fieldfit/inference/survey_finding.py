@@ -64,6 +64,18 @@ class SameWall:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Suspect:
+    """A tap that the others contradict."""
+
+    column: str
+    """Its column."""
+    offset_m: float
+    """How much too high it reads, all else as stated [m]."""
+    share: float
+    """Share of the misfit that this would take away [-]."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class SideFlow:
     """A side flow that was inferred."""
 
@@ -101,5 +113,7 @@ class Survey:
     """Reduced χ² with free walls, or the factor the noise's variance was widened by [-]."""
     pulls: tuple[tuple[str, float], ...]
     """Fitted shared errors over their stated standard uncertainties, largest first."""
+    suspect: Suspect | None
+    """A tap whose gauge or height would account for most of a disagreement; None where there is none to account for."""
     grade: GradeLine
     """The hydraulic grade line at the largest flow."""

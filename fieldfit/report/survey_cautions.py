@@ -9,7 +9,7 @@ import numpy as np
 from fieldfit.field.readings import Plateaus
 from fieldfit.field.section import Section
 from fieldfit.inference.survey_finding import Survey
-from fieldfit.report.digits import fixed, litres, significant
+from fieldfit.report.digits import fixed, litres, percent, significant
 from fieldfit.report.finding import Caution, ReachFinding
 
 PULL = 2.5
@@ -37,7 +37,7 @@ def survey_cautions(section: Section, plateaus: Plateaus, found: Survey | None) 
     tuple of Caution
         Most weighty first.
     """
-    told = [*_rising(section, found), *_dead(section, plateaus), *_pulls(found), *_branches(section, found)]
+    told = [*_rising(section, found), *_dead(section, plateaus, found), *_pulls(found), *_branches(section, found)]
     return tuple(told)
 
 
@@ -67,22 +67,26 @@ def deposit_cautions(reaches: tuple[ReachFinding, ...]) -> tuple[Caution, ...]:
     return tuple(told)
 
 
-def _dead(section: Section, plateaus: Plateaus) -> Iterator[Caution]:
-    """Name taps that were dead."""
+def _dead(section: Section, plateaus: Plateaus, found: Survey | None) -> Iterator[Caution]:
+    """Name taps that were dead; one that was dead at rest cannot be levelled."""
+    used = set() if found is None else {int(tap) for tap in (*found.readings.upper, *found.readings.lower)}
     total = len(plateaus.number)
     for index, tap in enumerate(section.taps):
         dead = int(np.count_nonzero(np.isnan(plateaus.pressure_pa[index])))
         if dead:
             beside = [one.column for one in section.taps[max(index - 1, 0) : index + 2] if one is not tap]
             between = (
-                f"; the taps beside it, {' and '.join(beside)}, were fitted as one reach there"
-                if len(beside) > 1
-                else ""
+                f"; the taps beside it, {' and '.join(beside)}, were fitted as one reach" if len(beside) > 1 else ""
+            )
+            where = (
+                "there"
+                if not used or index in used
+                else "throughout, for it was dead at rest and could not be levelled"
             )
             yield Caution(
                 about="dead tap",
-                text=f"{tap.column} gave no usable reading in {dead} of {total} plateaus{between}. What is said of the reaches "
-                "beside it stands on the others. Look at its gauge, hose and cable.",
+                text=f"{tap.column} gave no usable reading in {dead} of {total} plateaus{between}{f' {where}' if between else ''}. "
+                "What is said of the reaches beside it stands on the others. Look at its gauge, hose and cable.",
             )
 
 
@@ -119,8 +123,20 @@ def _pulls(found: Survey | None) -> Iterator[Caution]:
         yield Caution(
             about="survey",
             text=f"The taps agree with each other less well than their noise explains (reduced χ² "
-            f"{significant(found.reduced_chi_square, 2)}); the noise was widened to match.",
+            f"{significant(found.reduced_chi_square, 2)}); the noise was widened to match. {_suspected(found)}".strip(),
         )
+
+
+def _suspected(found: Survey) -> str:
+    """Return which tap would account for a disagreement."""
+    one = found.suspect
+    if one is None:
+        return "No single tap accounts for it: taps may be mixed up, or the flow may not be what the meter says."
+    off = f"{significant(abs(one.offset_m), 2)} m too {'high' if one.offset_m > 0.0 else 'low'}"
+    return (
+        f"If {one.column} read {off} throughout, {percent(one.share)} of it would be gone: "
+        "check its height and its gauge, or level all gauges with a static."
+    )
 
 
 def _branches(section: Section, found: Survey | None) -> Iterator[Caution]:

@@ -68,9 +68,9 @@ def _likely_words(found: Survey, one: Likely) -> str:
             f"the rest (probability {sure}): a wall {_wall_words(one.wall)}."
         )
     parts = [
-        f"{value_with_band(k.best, k.measurement)} between {place(found, (reach,))}, {significant(head, 2)} m of head at "
+        f"{value_with_band(k.best, k.measurement)} between {place(found, spot)}, {significant(head, 2)} m of head at "
         f"{litres(found.grade.flow_m3_s)}"
-        for k, head, reach in zip(one.local_k, one.head_m, one.reaches, strict=True)
+        for k, head, spot in zip(one.local_k, one.head_m, _spots(one), strict=True)
         if k.best is not None and k.measurement is not None
     ]
     return f"The readings ask for a local loss of K {'; and of K '.join(parts)} (probability {sure})."
@@ -90,6 +90,11 @@ def _alike_words(found: Survey) -> list[str]:
     return told
 
 
+def _spots(one: Likely) -> list[tuple[int, ...]]:
+    """Return the reaches of each local loss; one alone may lie anywhere between two taps that gave readings."""
+    return [one.reaches] if one.cause == "local loss" else [(reach,) for reach in one.reaches]
+
+
 def short(found: Survey, one: Likely) -> str:
     """Return an explanation in a few words."""
     if one.cause == "one wall":
@@ -99,7 +104,7 @@ def short(found: Survey, one: Likely) -> str:
     if one.cause == "bad reach":
         times = f", {significant(one.friction_ratio, 3)} times the friction of the rest" if one.friction_ratio else ""
         return f"another wall between {place(found, one.reaches)}{times}"
-    where = "; ".join(place(found, (reach,)) for reach in one.reaches)
+    where = "; ".join(place(found, spot) for spot in _spots(one))
     return f"{'a local loss' if one.cause == 'local loss' else 'local losses'} between {where}"
 
 

@@ -214,3 +214,36 @@ def test_the_grade_line_stands_on_the_survey(valve):
     assert np.all(np.abs(at_taps - grade.head_m) <= grade.bar_m + 0.05)
     step = grade.fitted_m[9] - grade.fitted_m[10]
     assert step == pytest.approx(valve.likely[0].head_m[0], rel=0.02)
+
+
+def without_statics(section, log):
+    """Leave the rows at rest out of the log."""
+    rows = [line.split(",") for line in log.splitlines()]
+    kept = [rows[0], *(row for row in rows[1:] if float(row[1]) > 1.0)]
+    return section, "\n".join(",".join(row) for row in kept) + "\n"
+
+
+def test_a_wrong_height_is_traced_to_its_tap(tmp_path):
+    def edit(section, log):
+        return without_statics(section.replace('"16.1 m', '"18.1 m'), log)
+
+    found = surveyed(exact_day(old_main()), tmp_path / "wrong", edit)
+    assert found.reduced_chi_square > 100.0
+    assert found.suspect.column == "tap 4"
+    assert found.suspect.offset_m == pytest.approx(2.0, abs=0.1)
+    assert found.suspect.share > 0.9
+    assert surveyed(exact_day(old_main()), tmp_path / "right", without_statics).suspect is None
+
+
+def test_a_tap_that_was_dead_at_rest_is_left_out_and_the_valve_still_placed(tmp_path):
+    def edit(section, log):
+        rows = [line.split(",") for line in log.splitlines()]
+        for row in rows[1:]:
+            row[4] = "" if float(row[1]) < 1.0 else row[4]
+        return section, "\n".join(",".join(row) for row in rows) + "\n"
+
+    found = surveyed(exact_day(old_main(hidden_k=VALVE)), tmp_path, edit)
+    assert (found.likely[0].cause, found.likely[0].reaches) == ("local loss", (1, 2))
+    assert found.reaches[1].wall is None
+    low, high = found.likely[0].local_k[0].measurement
+    assert low < 25.0 < high
