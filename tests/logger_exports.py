@@ -419,6 +419,24 @@ def _marks() -> dict[str, Callable[[], Export]]:
         "headings over again": lambda: Export(
             data=with_lines(base, {100: heads, 200: heads}), says="('time') is no reading"
         ),
+        "headings broken into lines": lambda: Export(
+            data=base.replace("flow [L/s]", '"flow\n[L/s]"').replace("upstream [kPa]", '"upstream\n(kPa)"').encode(),
+            says="found in line 3",
+        ),
+        "remarks in headings": lambda: Export(
+            data=base.replace("flow [L/s]", '"Flow, L/s (serial 118, channel 2)"')
+            .replace("upstream [kPa]", "Upstream (kPa) (PG-07)")
+            .encode()
+        ),
+        "remarks beside rows": lambda: Export(
+            data=with_lines(
+                "\n".join(
+                    ("note," if not row else "end," if row == 40 else ",") + line
+                    for row, line in enumerate(lines_of(base))
+                ),
+                {},
+            )
+        ),
         "quoted fields": lambda: Export(
             data=base.replace(",", '","').replace("\n", '"\n"').join(['"', ""])[:-1].encode()
         ),
@@ -526,6 +544,7 @@ def _clocks() -> dict[str, Callable[[], Export]]:
         "times of day with the date above": lambda: Export(
             data=with_lines(text(clean(), lambda time: f"{time:%H:%M:%S}"), {0: "Date: 12.05.2026"}), says="2026-05-12"
         ),
+        "whole minutes": dated("%d.%m.%Y %H:%M", says="no seconds", time_within=4.0, roughness_within=0.02),
         "seconds from start": counted("time [s]", 1.0),
         "elapsed seconds": counted("Elapsed seconds", 1.0, "{:.0f}"),
         "minutes from start": counted("Elapsed (min)", 60.0),

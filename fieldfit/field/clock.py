@@ -23,6 +23,7 @@ from fieldfit.field.clock_texts import (
 )
 from fieldfit.field.summer_time import straightened
 from fieldfit.field.units import shown
+from fieldfit.field.whole_minutes import spread_minutes
 
 if TYPE_CHECKING:
     from pandas import Series
@@ -87,6 +88,7 @@ def read_clock(
         order = place.known.order
         advice = f"{ADVICE} The dates are said to be {order}." if order else ADVICE
         raise InputError(seen, advice, f"{place.file}:{line[row]}, column '{shown(place.heading)}'")
+    stamps = spread_minutes(stamps, said)
     if not universal and dates_known:
         stamps = straightened(stamps, said)
     if place.zone_s is not None and not universal:

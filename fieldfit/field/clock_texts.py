@@ -246,7 +246,7 @@ def read_times_of_day(times: Series[Any], place: ClockPlace, day: dt.date | None
 def _from_start(texts: Series[Any], place: ClockPlace) -> bool:
     """Return whether times in hours, minutes and seconds count from the start."""
     given = texts.dropna()
-    if re.search(r"(?i)elapsed|duration|mm:ss|h+:mm", place.heading) and not re.search(
+    if re.search(r"(?i)elapsed|duration|(?<![h:m])m+:s+", place.heading) and not re.search(
         r"(?i)[ap]m$", str(given.iloc[0])
     ):
         return True

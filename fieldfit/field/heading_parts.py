@@ -115,6 +115,9 @@ def heading_partings(heading: str) -> Iterator[tuple[str, str, bool]]:
         for place in range(len(heading) - 1, -1, -1):
             depth += (heading[place] in "])") - (heading[place] in "[(")
             if depth == 0:
+                # Behind the unit may stand a remark in brackets.
+                before = ((name, its_unit) for name, its_unit, _ in heading_partings(heading[:place].strip()))
+                yield from ((name, its_unit, False) for name, its_unit in before)
                 yield heading[:place].strip(), heading[place + 1 : -1].strip(), True
                 break
     for mark, sure in ((",", True), ("_", False), (" ", False)):

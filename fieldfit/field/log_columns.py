@@ -132,16 +132,22 @@ def find_temperature(headings: Headings, said: list[str], where: str) -> Column 
     return _by_name(headings, TEMPERATURE_NAMES, "temperature", said, where)
 
 
-def find_barometer(headings: Headings, hints: LogHints, said: list[str], where: str) -> Column | None:
-    """Return the column of the pressure of the air, if the log has one.
+def find_barometer(headings: Headings, hints: LogHints, needed: bool, said: list[str], where: str) -> Column | None:
+    """Return the column of the pressure of the air, if the log has one that can be read, or that is needed.
 
     Raises
     ------
     InputError
         When its heading has no unit of pressure.
     """
-    names = BAROMETER_NAMES if hints.barometer_column is None else (hints.barometer_column,)
-    return _by_name(headings, names, "pressure", said, where)
+    if hints.barometer_column is not None:
+        return _by_name(headings, (hints.barometer_column,), "pressure", said, where)
+    try:
+        return _by_name(headings, BAROMETER_NAMES, "pressure", said, where)
+    except InputError:
+        if needed:
+            raise
+        return None
 
 
 def _by_name(
@@ -210,7 +216,7 @@ def _flow_unit(text: str, wanted: Wanted) -> tuple[Unit, Counts]:
     """Return the unit of the meter's column, and whether it counts a volume."""
     totaliser = wanted.meter.totaliser if wanted.meter is not None else None
     if is_unit(text, "flow"):
-        if totaliser is not None:
+        if totaliser:
             seen = f"'{shown(text)}' is a unit of flow, and the section file says the column counts a volume"
             raise InputError(seen, "Take totaliser out, or name the column of the volume.")
         return unit(text, "flow"), ""

@@ -14,7 +14,7 @@ from fieldfit.field.log_headings import Headings, wanted_columns
 from fieldfit.field.log_hints import LogHints
 from fieldfit.field.log_rows import Form, sample_rows, too_many_fields
 from fieldfit.field.log_source import LogSource
-from fieldfit.field.number_marks import decimal_mark
+from fieldfit.field.number_marks import decimal_mark, is_open
 from fieldfit.field.section import Section
 from fieldfit.field.time_column import TimeColumn, find_time
 from fieldfit.field.units import shown
@@ -95,7 +95,7 @@ def log_form(
     except UnicodeError:
         raise source.undecodable() from None
     file = source.path.name
-    headings = find(lines[:LONGEST_PREAMBLE], wanted_columns(section), file)
+    headings = _headings(lines[:LONGEST_PREAMBLE], section, find, file)
     columns = _columns(headings, section, lines, said, file)
     rows = _form(headings, columns, lines, section.log_hints, file)
     clocked = columns.time is not None and (columns.time.unit is not None or _is_iso(columns.time, lines, headings))
@@ -103,8 +103,36 @@ def log_form(
         columns=columns,
         rows=rows,
         above=tuple(lines[: headings.named_in - 1]),
-        blockwise=columns.plain and clocked and source.text is None and source.length is None,
+        blockwise=columns.plain and clocked and not rows.decimal_open and source.text is None and source.length is None,
     )
+
+
+def _headings(
+    lines: list[str], section: Section, find: Callable[[Sequence[str], Sequence[Wanted], str], Headings], file: str
+) -> Headings:
+    """Find the headings, which spreadsheets may break into several lines within quotation marks."""
+    wanted = wanted_columns(section)
+    try:
+        return find(lines, wanted, file)
+    except InputError as error:
+        unbroken = _unbroken(lines)
+        if unbroken == lines:
+            raise
+        try:
+            return find(unbroken, wanted, file)
+        except InputError:
+            raise error from None
+
+
+def _unbroken(lines: list[str]) -> list[str]:
+    """Return lines of which those that a quotation mark holds together stand as one, in the last one's place."""
+    whole: list[str] = []
+    for line in lines:
+        held = bool(whole) and whole[-1].count('"') % 2 == 1
+        whole.append(f"{whole[-1].rstrip()} {line}" if held else line)
+        if held:
+            whole[-2] = ""
+    return whole
 
 
 def _is_iso(time: TimeColumn, lines: Sequence[str], headings: Headings) -> bool:
@@ -134,11 +162,12 @@ def _columns(headings: Headings, section: Section, lines: Sequence[str], said: l
         column = resolve_column(wanted, headings, place, its_unit, where)
         say_unit(wanted, its_unit, column, said)
         instruments[wanted.column] = column
+    absolute = any(column.unit.absolute for column in instruments.values())
     return Columns(
         instruments=instruments,
         temperature=find_temperature(headings, said, where),
         time=find_time(headings, below[0][1] if below else (), said, where),
-        barometer=find_barometer(headings, section.log_hints, said, where),
+        barometer=find_barometer(headings, section.log_hints, absolute, said, where),
     )
 
 
@@ -165,13 +194,15 @@ def _form(headings: Headings, columns: Columns, lines: Sequence[str], hints: Log
             f"{file}:{samples[0][0]}",
         )
     cells = [row[place] for _, row in samples for place in columns.of_numbers if place < len(row)]
+    is_open_mark = hints.decimal is None and is_open(cells, headings.separator)
     return Form(
         headings=headings,
-        decimal=decimal_mark(cells, headings.separator, file, hints.decimal),
+        decimal="." if is_open_mark else decimal_mark(cells, headings.separator, file, hints.decimal),
         width=max(names, widest),
         numbers=columns.of_numbers,
         label=columns.time.position if columns.time else 0,
         decimal_stated=hints.decimal is not None,
+        decimal_open=is_open_mark,
     )
 
 

@@ -49,6 +49,8 @@ class Form:
     """Place of the column in which a summary row would say so."""
     decimal_stated: bool = False
     """Whether the section file states the decimal mark."""
+    decimal_open: bool = False
+    """Whether only further rows can tell the decimal mark."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -86,8 +88,8 @@ def read_rows(source: LogSource, form: Form, said: list[str]) -> tuple[Rows, str
         At the line and column where a number cannot be read, or a row has too many fields.
     """
     try:
-        table = _table(source, form, "float64")
-        careful = False
+        careful = form.decimal_open
+        table = _table_as_text(source, form) if careful else _table(source, form, "float64")
     except InputError:
         raise
     except UnicodeDecodeError:
@@ -169,7 +171,8 @@ def _cleaned(file: TextIO, form: Form) -> TextIO:
 def _with_missing(table: DataFrame, form: Form) -> tuple[DataFrame, dict[int, str]]:
     """Return rows of texts with marks of missing values made missing, and the word of each row that has no number."""
     places = [place for place in form.numbers if place != form.label] or list(form.numbers)
-    texts = {place: as_missing(table[place], MISSING_MARKS) for place in form.numbers}
+    texts = {place: as_missing(column, MISSING_MARKS) for place, column in table.items()}
+    texts |= {place: texts[place].str.replace("\u2212", "-", regex=False) for place in form.numbers}
     wordy = np.array([texts[place].str.match(_WORD).fillna(False).to_numpy(dtype=bool) for place in places])
     absent = np.array([texts[place].isna().to_numpy() for place in places])
     without = np.all(wordy | absent, axis=0) & np.any(wordy, axis=0)
@@ -180,10 +183,7 @@ def _with_missing(table: DataFrame, form: Form) -> tuple[DataFrame, dict[int, st
         )
     for place in places:
         texts[place] = texts[place].mask(without)
-    table = table.copy()
-    for place, column in texts.items():
-        table[place] = column
-    return table, words
+    return type(table)(texts), words
 
 
 def _say_words(words: Mapping[int, str], line: NDArray[np.int64], kept: NDArray[np.bool_], said: list[str]) -> None:

@@ -27,7 +27,7 @@ _GROUPS = {
     ",": rf"[+-]?[1-9][0-9]{{0,2}}(?:([.{_GAPS}])[0-9]{{3}})(?:\1[0-9]{{3}})*(?:,[0-9]*)?{_EXPONENT}",
 }
 _PLAIN = {".": _NUMBER, ",": _NUMBER.replace(r"\.", ",")}
-_ONE_GROUP = re.compile(r"[+-]?[1-9][0-9]{0,2},[0-9]{3}")
+_ONE_GROUP = re.compile(r"[+-]?[1-9][0-9]{0,2}[,.][0-9]{3}")
 _HAS_COMMA = re.compile(r"[+-]?[0-9.,'’\s]*,[0-9.,'’\s]*")
 
 
@@ -35,7 +35,7 @@ def decimal_mark(cells: Sequence[str], separator: str, file: str, stated: str | 
     """Return the decimal mark that numbers are written with.
 
     A cell such as "412,1" or "1.234,5" can be read with a decimal comma only, "1,234.5" with a decimal point only;
-    "1,234" either way. Between semicolons the last is taken with a decimal comma, as spreadsheets write it.
+    "1,234" and "1.234" either way.
 
     Parameters
     ----------
@@ -51,7 +51,7 @@ def decimal_mark(cells: Sequence[str], separator: str, file: str, stated: str | 
     Raises
     ------
     InputError
-        When some cells need one mark and some the other, or every comma may part thousands.
+        When some cells need one mark and some the other, or every mark may part thousands.
 
     Examples
     --------
@@ -68,13 +68,35 @@ def decimal_mark(cells: Sequence[str], separator: str, file: str, stated: str | 
         raise InputError(seen, ADVICE, file)
     if commas or points:
         return "," if commas else "."
-    open_ones = [cell for cell in marked if _ONE_GROUP.fullmatch(cell)]
-    if open_ones and separator == ";":
-        return ","
-    if open_ones:
-        seen = f"it is not clear whether the comma in '{shown(open_ones[0])}' is a decimal mark or parts thousands"
+    if is_open(cells, separator):
+        cell = next(cell for cell in marked if _ONE_GROUP.fullmatch(cell))
+        mark = "comma" if "," in cell else "point"
+        seen = f"it is not clear whether the {mark} in '{shown(cell)}' is a decimal mark or parts thousands"
         raise InputError(seen, ADVICE, file)
     return "."
+
+
+def is_open(cells: Sequence[str], separator: str) -> bool:
+    """Return whether every mark in some numbers may be a decimal mark and may part thousands.
+
+    Between commas a point is a decimal mark.
+
+    Parameters
+    ----------
+    cells : sequence of str
+        Fields of the columns of numbers.
+    separator : str
+        What stands between fields.
+
+    Examples
+    --------
+    >>> is_open(["1.412", "398"], ";"), is_open(["1.412", "0.398"], ";"), is_open(["1.412"], ",")
+    (True, False, False)
+    """
+    marked = [cell.strip() for cell in cells if "," in cell or "." in cell]
+    numbers = [cell for cell in marked if _fits(cell, ",") or _fits(cell, ".")]
+    plain = separator == ","
+    return bool(numbers) and all(_ONE_GROUP.fullmatch(cell) and not (plain and "." in cell) for cell in numbers)
 
 
 def _fits(cell: str, mark: str) -> bool:

@@ -72,8 +72,13 @@ def _no_readings(table: DataFrame, label: int, form: Form, kept: Mask) -> dict[i
     comment = texts.str.startswith(COMMENT_SIGNS)
     others = [place for place in form.numbers if place != label]
     empty = np.all(table[others].iloc[lettered].isna().to_numpy(), axis=1)
-    note = empty & ~texts.str.contains(_DIGITS).to_numpy(dtype=bool)
-    wrong = lettered[(summary | comment).to_numpy(dtype=bool) | note]
+    unlabelled = table[form.label].iloc[lettered].isna().to_numpy() if label != form.label else None
+    if unlabelled is None:
+        note = empty & ~texts.str.contains(_DIGITS).to_numpy(dtype=bool)
+        wrong = lettered[(summary | comment).to_numpy(dtype=bool) | note]
+    else:
+        # Beside a clock such a word may be a remark on a good row.
+        wrong = lettered[comment.to_numpy(dtype=bool) | (summary.to_numpy(dtype=bool) & unlabelled)]
     return {int(row): str(column.iloc[row]) for row in wrong}
 
 
