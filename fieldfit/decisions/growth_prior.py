@@ -52,8 +52,8 @@ class Belief:
 def lamont_rate(langelier: float) -> float:
     """Return the growth of roughness that a Langelier index goes with, by Lamont's trends [m/year].
 
-    The four published trends lie on one line of ln rate against the index, 10^−(4.08 + 0.38 LI) ft a year; a water
-    that does not attack (index above 0) is given the slightest trend.
+    Between the four published trends ln rate goes in straight lines with the index, and so on beyond the severest; a
+    water that does not attack (index above 0) is given the slightest.
 
     Parameters
     ----------
@@ -68,14 +68,18 @@ def lamont_rate(langelier: float) -> float:
     References
     ----------
     Lamont, P. A. (1981), Common pipe flow formulas compared with the theory of roughness, J. AWWA 73(5), 274-280,
-    doi:10.1002/j.1551-8833.1981.tb04704.x; the line: Walski, Sharpe and Shields (1988), US Army WES EL-88-2.
+    doi:10.1002/j.1551-8833.1981.tb04704.x.
 
     Examples
     --------
-    >>> [round(1e3 * lamont_rate(index), 3) for index in (0.0, -1.3, -2.6, -3.9)]
-    [0.025, 0.079, 0.247, 0.769]
+    >>> [round(1e3 * lamont_rate(index), 3) for index in (0.5, 0.0, -1.3, -2.6, -3.9)]
+    [0.025, 0.025, 0.076, 0.25, 0.76]
     """
-    return float(10.0 ** -(4.08 + 0.38 * min(langelier, 0.0)) * 0.3048)
+    attack = -np.array([index for _, index, _ in LAMONT])
+    ln_rate = np.log([rate for _, _, rate in LAMONT])
+    beyond = max(-langelier - float(attack[-1]), 0.0)
+    last_slope = float((ln_rate[-1] - ln_rate[-2]) / (attack[-1] - attack[-2]))
+    return float(np.exp(np.interp(-langelier, attack, ln_rate) + last_slope * beyond))
 
 
 def colebrook_white_rate(ph: float) -> float:
