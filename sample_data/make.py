@@ -214,7 +214,7 @@ log = "2018-06-05.csv"
 meter = "MAG-140"
 meter_accuracy = "0.5 % of reading"
 cleaned = 2018-05-22
-promised_c = 110
+promised_c = 108
 
 [[campaign]]
 date = 2026-05-07

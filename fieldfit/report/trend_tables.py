@@ -139,12 +139,12 @@ def thresholds(ageing: Ageing) -> Table | None:
     if not ageing.crossings:
         return None
     by = ageing.crossings[0].by
-    head = ("reached", "with 10 %", "with 50 %", "with 90 %", "already", "not within 100 years")
+    head: Row = ("reached", "with 10 %", "with 50 %", "with 90 %", "already", "not within 100 years")
     head = (*head, f"before {by.isoformat()}") if by else head
     rows = []
     for crossing in ageing.crossings:
         days = tuple("never" if day is None else day.isoformat() for day in crossing.dates)
-        row = (words.threshold_words(crossing, ageing), *days, percent(crossing.already), percent(crossing.never))
+        row: Row = (words.threshold_words(crossing, ageing), *days, percent(crossing.already), percent(crossing.never))
         rows.append((*row, percent(crossing.probability_by or 0.0)) if by else row)
     return Table(head=head, rows=tuple(rows))
 

@@ -118,7 +118,8 @@ def _frame(ax: Axes, x: tuple[float, float], years: Array, low: float | None) ->
     ends = []
     for collection in ax.collections:
         for path in collection.get_paths():
-            inside = path.vertices[(path.vertices[:, 0] >= x[0]) & (path.vertices[:, 0] <= x[1]), 1]
+            corners = np.asarray(path.vertices, dtype=np.float64)
+            inside = corners[(corners[:, 0] >= x[0]) & (corners[:, 0] <= x[1]), 1]
             ends += [float(inside.min()), float(inside.max())] if inside.size else []
     bottom, top = min(ends), max(ends)
     room = 0.06 * (top - bottom)
