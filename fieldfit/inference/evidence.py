@@ -19,6 +19,9 @@ FAR = 6.0
 STRIDE = 2.0
 """Longest step of one unknown [prior standard deviations]."""
 
+LOST_DIGITS = 1e-12
+"""Share of a trial's own variance below which noise cannot be told from rounding [-]."""
+
 
 class Evidence(NamedTuple):
     """What T trials make of K readings; M unknowns, each normal with zero mean and unit variance beforehand."""
@@ -115,7 +118,11 @@ def posterior_covariance(slopes: Array, noise: Array) -> Array:
 
 def _spread(slopes: Array, noise: Array) -> Array:
     """Return (T, K, K) covariances of the readings beforehand [m²]."""
-    return np.asarray(np.swapaxes(slopes, 1, 2) @ slopes + np.diag(noise**2))
+    spread = np.asarray(np.swapaxes(slopes, 1, 2) @ slopes)
+    rows = np.arange(len(noise))
+    # A wild trial may reach a thousand kilometres of head: its digits would swallow the noise and leave no inverse.
+    spread[:, rows, rows] += noise**2 + LOST_DIGITS * spread[:, rows, rows]
+    return spread
 
 
 def _towards(u: Array, misfit: Array, slopes: Array, noise: Array) -> Array:
