@@ -67,9 +67,8 @@ def _with_shared_letters(text: str, name: str, outlines: dict[str, str]) -> str:
         called[found[1]] = outlines.setdefault(found[2], f"{name}-{len(outlines)}")
         return f'<path id="{called[found[1]]}" d="{found[2]}" transform="scale(.015625)"/>' if new else ""
 
-    def use(found: re.Match[str]) -> str:
-        place = f' x="{found[2]}"' if found[2] else ""
-        return f'<use href="#{called.get(found[1], found[1])}"{place}/>'
-
-    text = _LETTER.sub(use, _OUTLINE.sub(define, text))
+    text = _OUTLINE.sub(define, text)
+    # A letter on the line needs no more than its place; one that is raised or lowered keeps its long form.
+    text = _LETTER.sub(lambda found: f'<use href="#{found[1]}" x="{found[2] or 0}"/>', text)
+    text = re.sub(r'href="#([^"]+)"', lambda found: f'href="#{called.get(found[1], found[1])}"', text)
     return text.replace("<defs> </defs> ", "")
