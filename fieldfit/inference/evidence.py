@@ -109,7 +109,7 @@ def posterior_covariance(slopes: Array, noise: Array) -> Array:
 
     Examples
     --------
-    >>> posterior_covariance(np.full((1, 1, 1), 0.5), np.array([0.5])).tolist()
+    >>> posterior_covariance(np.full((1, 1, 1), 0.5), np.array([0.5])).round(6).tolist()
     [[[0.5]]]
     """
     gained = slopes @ np.linalg.solve(_spread(slopes, noise), np.swapaxes(slopes, 1, 2))
