@@ -141,7 +141,10 @@ def channel_steps(log: Log, screening: Screening, section: Section) -> tuple[Cha
     members = [np.flatnonzero(screening.plateau == number) for number in numbers]
     channels = [(section.meter.column, log.flow_m3_s, log.flow_step_m3_s)]
     steps = log.pressure_step_pa.tolist()
-    channels += [(tap.column, log.pressure_pa[k], steps[k]) for k, tap in enumerate(section.taps)]
+    if section.differential:
+        channels.append((section.differential.column, log.pressure_pa[0], steps[0]))
+    else:
+        channels += [(tap.column, log.pressure_pa[k], steps[k]) for k, tap in enumerate(section.taps)]
     return tuple(_channel(*channel, members) for channel in channels)
 
 

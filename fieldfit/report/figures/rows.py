@@ -74,16 +74,18 @@ def _pressures(ax: Axes, campaign: ScreenedLog, section: Section, time: Array) -
     """Draw the pressures, each named at its last value."""
     kilopascals = campaign.log.pressure_pa * 1e-3
     style.frame(ax, (0.0, 1.0), _range(kilopascals, campaign.screening), (6, 4))
-    shades = np.linspace(0.0, 1.0, len(section.taps))
+    between = section.differential
+    names = [between.column] if between else [tap.column for tap in section.taps]
+    shades = np.linspace(0.0, 1.0, len(names))
     labels = []
-    for tap, values, shade in zip(section.taps, kilopascals, shades, strict=True):
+    for column, values, shade in zip(names, kilopascals, shades, strict=False):
         colour = style.READING if shade == 0.0 else style.blend(style.READING, style.OWN_BAND, float(shade))
         _line(ax, time, values, colour, campaign.log.kind == "sheet")
         finite = values[np.isfinite(values)]
         if finite.size:
-            labels.append((float(finite[-1]), style.shorten(tap.column, 18), colour))
+            labels.append((float(finite[-1]), style.shorten(column, 18), colour))
     style.side_labels(ax, labels)
-    style.label(ax, "", "gauge pressure [kPa]")
+    style.label(ax, "", "pressure difference [kPa]" if between else "gauge pressure [kPa]")
 
 
 def _line(ax: Axes, time: Array, values: Array, colour: str, dots: bool) -> None:

@@ -32,6 +32,8 @@ class Check:
     """What to do about it, as a sentence; empty when passed."""
     needed: bool
     """Whether an assessment makes no sense without it; else it only weakens one."""
+    at_most: bool = False
+    """Whether the value should be at most the limit; else at least."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

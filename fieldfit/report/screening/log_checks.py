@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 
 import numpy as np
@@ -65,6 +66,7 @@ def _aside(screening: Screening) -> Check:
         what="Share of rows set aside",
         value=share,
         limit=ASIDE,
+        at_most=True,
         unit="-",
         passed=share <= ASIDE,
         because=f"{aside} of {rows} rows are set aside{most}.",
@@ -82,6 +84,7 @@ def _faults(screening: Screening) -> Check:
         what="Share of rows with a fault",
         value=share,
         limit=FAULTY,
+        at_most=True,
         unit="-",
         passed=share <= FAULTY,
         because=f"Faults of instruments, logger or direction: {listed}." if faults else "No row has a fault.",
@@ -117,7 +120,9 @@ def _resolution(reaches: tuple[ReachScreen, ...], steps: tuple[ChannelSteps, ...
     for reach in reaches:
         used = used_plateaus(reach.heads)
         if np.any(used):
-            pascals = float(np.hypot(by_column[reach.upstream.column], by_column[reach.downstream.column]))
+            gauges = [by_column.get(tap.column, 0.0) for tap in (reach.upstream, reach.downstream)]
+            # One transmitter between the taps has a column of its own.
+            pascals = math.hypot(*gauges) if any(gauges) or len(steps) > 2 else steps[-1].standard
             smallest = float(np.min(reach.heads.head_loss_m[used]))
             left = pascals / (1000.0 * STANDARD_GRAVITY)
             if smallest > 0.0 and left / smallest > worst:
@@ -129,6 +134,7 @@ def _resolution(reaches: tuple[ReachScreen, ...], steps: tuple[ChannelSteps, ...
             what="Steps of the gauges over the smallest head loss",
             value=worst,
             limit=STEP,
+            at_most=True,
             unit="-",
             passed=worst <= STEP,
             because=told,

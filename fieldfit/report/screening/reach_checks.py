@@ -226,6 +226,7 @@ def _statics(heads: ReachHeads) -> Iterator[Check]:
             what="Statics against survey, in standard uncertainties",
             value=off,
             limit=AGREE,
+            at_most=True,
             unit="-",
             passed=off <= AGREE,
             because=f"At rest the gauges differ from the survey by {fixed(level.offset_m, 2)} m; their stated limits allow "
@@ -251,6 +252,7 @@ def _drift(heads: ReachHeads) -> Iterator[Check]:
         what="Drift between statics over the smallest head loss",
         value=share,
         limit=DRIFT,
+        at_most=True,
         unit="-",
         passed=fine,
         because=f"The gauges drifted by {fixed(drift, 3)} m against each other{'' if seen else ', no more than their noise'}; the "

@@ -31,8 +31,8 @@ def screen_record(finding: ScreenFinding) -> Record:
     - ``reaches``: ``from``, ``to``, ``head_loss`` (``plateau``, ``head_loss_m``, ``standard_m``, ``set_aside`` of each),
       ``levelling`` (``statics``, ``offset_m``, ``standard_m``, ``drift_m``, ``allowed_standard_m``; null without a
       static), ``checks``;
-    - ``checks``: ``what``, ``value``, ``limit``, ``unit``, ``passed``, ``needed``, ``because``, ``do``; those of a reach
-      stand with it, those of the log as a whole with the campaign;
+    - ``checks``: ``what``, ``value``, ``limit``, ``at_most`` (else at least), ``unit``, ``passed``, ``needed``, ``because``,
+      ``do``; those of a reach stand with it, those of the log as a whole with the campaign;
     - ``clocks``, one for each logger of several: ``file``, ``columns``, ``how`` its offset is known, ``offset_s`` ahead,
       ``interval_s`` (95 %), ``drift`` (s/s);
     - ``assumed``: sentences.
@@ -149,6 +149,7 @@ def _check(check: Check) -> Record:
         "what": check.what,
         "value": _number(check.value),
         "limit": _number(check.limit),
+        "at_most": check.at_most,
         "unit": check.unit,
         "passed": check.passed,
         "needed": check.needed,

@@ -52,6 +52,7 @@ def static_checks(
                 because="Flow, pressures and their difference stand still in every static.",
                 do="",
                 needed=False,
+                at_most=True,
             )
         )
     return (*found, *(check for reach in reaches for check in _disagreement(reach, section)))
@@ -74,4 +75,5 @@ def _disagreement(reach: ReachScreen, section: Section) -> list[Check]:
 def _failed(what: str, because: str, do: str, seen: tuple[float, float, str]) -> Check:
     """Return a check that was not passed."""
     value, limit, unit = seen
-    return Check(what=what, value=value, limit=limit, unit=unit, passed=False, because=because, do=do, needed=False)
+    told = {"what": what, "because": because, "do": do}
+    return Check(**told, value=value, limit=limit, unit=unit, passed=False, needed=False, at_most=True)

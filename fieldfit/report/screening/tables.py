@@ -6,7 +6,7 @@ import math
 
 from fieldfit.field.screens import SCREENS, limit
 from fieldfit.field.section import Section
-from fieldfit.report.digits import fixed, percent, significant
+from fieldfit.report.digits import fixed, percent, significant, with_unit
 from fieldfit.report.screening.finding import CampaignScreen, Check
 from fieldfit.report.tables import Table
 
@@ -18,8 +18,7 @@ def checks(found: tuple[Check, ...]) -> Table:
     """Return checks with what was found, what is wanted, and why."""
     rows = []
     for check in found:
-        most = check.what.startswith(("Share", "Drift", "Steps", "Statics against"))
-        wanted = f"{'at most' if most else 'at least'} {_value(check.limit, check)}"
+        wanted = f"{'at most' if check.at_most else 'at least'} {_value(check.limit, check)}"
         mark = "good" if check.passed else "missing" if check.needed else "weak"
         rows.append(
             (check.what, "–" if check.value is None else _value(check.value, check), wanted, mark, check.because)
@@ -31,9 +30,10 @@ def _value(value: float, check: Check) -> str:
     """Return a value of a check."""
     if check.what.startswith(PERCENT):
         return "all" if value == 1.0 else "none" if value == 0.0 else percent(value)
+    unit = "" if check.unit == "-" else check.unit
     if value == round(value) and abs(value) < 1e4:
-        return fixed(value, 0)
-    return significant(value, 2 if abs(value) < 100.0 else 3)
+        return with_unit(fixed(value, 0), unit)
+    return with_unit(significant(value, 2 if abs(value) < 100.0 else 3), unit)
 
 
 def steps(campaign: CampaignScreen) -> Table:

@@ -88,3 +88,10 @@ def test_a_section_that_was_not_surveyed_keeps_its_rows(findings):
     """Nothing levels the gauges, so no row can be set aside for its head loss."""
     campaign = findings["unsurveyed"].campaigns[0]
     assert {reason for reason, _ in campaign.screening.counts} == {"unsteady"}
+
+
+@pytest.mark.parametrize("name", LOGS)
+def test_limits_are_held_the_way_they_are_said(findings, name):
+    for check in findings[name].campaigns[0].all_checks:
+        if check.value is not None and not check.passed:
+            assert check.value >= check.limit if check.at_most else check.value < check.limit
