@@ -84,6 +84,7 @@ def _reach(ageing: Ageing, name: str, several: bool) -> dict[str, Any]:
         "place": ageing.place if several else "",
         "headline": words.headline(ageing),
         "answer": words.answer(ageing),
+        "thresholds_told": " ".join(words.crossing_words(crossing, ageing) for crossing in ageing.crossings),
         "cleanings_told": [words.cleaning_words(cleaning, ageing) for cleaning in ageing.cleanings],
         "remarks": ageing.remarks,
         "figures": _figures(ageing, name),

@@ -61,7 +61,6 @@ def headline(ageing: Ageing) -> str:
 def answer(ageing: Ageing) -> str:
     """Return the answer on one reach in one paragraph of plain words."""
     told = [_change_words(ageing), _growth_words(ageing), _ahead_words(ageing)]
-    told += [crossing_words(crossing, ageing) for crossing in ageing.crossings]
     return " ".join(text for text in told if text)
 
 
@@ -159,9 +158,9 @@ def crossing_words(crossing: Crossing, ageing: Ageing) -> str:
 
 def cleaning_words(cleaning: Cleaning, ageing: Ageing) -> str:
     """Say what a cleaning brought."""
-    done = {"cleaned": "The cleaning", "lined": "The lining"}.get(cleaning.event, "Whatever was done")
+    done = {"cleaned": "The cleaning of", "lined": "The lining of"}.get(cleaning.event, "Whatever was done before")
     told = (
-        f"{done} of {day(cleaning.date)} brought C at {litres(ageing.duty.flow_m3_s)} from {fixed(cleaning.c_before[1], 0)} "
+        f"{done} {day(cleaning.date)} brought C at {litres(ageing.duty.flow_m3_s)} from {fixed(cleaning.c_before[1], 0)} "
         f"to {fixed(cleaning.c_after[1], 0)}: a gain of {triple(cleaning.c_gain)} with a probability of "
         f"{percent(cleaning.probability_gain)} that there is one. At equal head it carries {triple(cleaning.capacity_ratio)} "
         "times the flow."

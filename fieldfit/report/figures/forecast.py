@@ -35,7 +35,7 @@ def forecast(ageing: Ageing) -> Figure:
         The figure.
     """
     panels = _panels(ageing)
-    tall, gap = 42.0, 15.0
+    tall, gap = 34.0, 14.0
     height = 13.0 + len(panels) * (tall + gap)
     figure = style.blank(height)
     for number, panel in enumerate(panels):

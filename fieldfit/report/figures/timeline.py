@@ -140,7 +140,7 @@ def _events(ax: Axes, ageing: Ageing, named: bool) -> None:
     shown = sorted((place, text) for place, text in marks if text and low <= place <= high)
     if named and shown:
         width = ax.get_position().width * style.WIDTH_MM
-        places = style.spread([(place - low) / (high - low) for place, _ in shown], 19.0 / width, 0.0, 1.0)
+        places = style.spread([(place - low) / (high - low) for place, _ in shown], 25.0 / width, 0.0, 1.0)
         for share, (_, text) in zip(places, shown, strict=True):
             style.write(
                 ax, (share, 1.14), text, style.NEW, transform=ax.transAxes, ha="center", va="bottom", linespacing=1.1
