@@ -7,6 +7,7 @@ import numpy as np
 import pytest
 from fault_maker import NOTHING, PLACES, Fault, draw, take_readings
 from invented import plant_line, street_main
+from readings_maker import make_readings
 
 from fieldfit.assessment import assess
 from fieldfit.decisions.stress_test import Stress
@@ -236,3 +237,30 @@ def test_one_flow_alone_is_answered_with_everything_it_leaves_open(tmp_path):
     found = finding.campaigns[0].reaches[0].explanations
     assert len(found.alike) >= 4
     assert "cannot tell" in page(finding)
+
+
+@pytest.mark.parametrize("seed", range(12))
+def test_any_readings_end_in_an_answer_that_can_be_printed(seed):
+    """Wild bores, viscosities, noises and head losses: probabilities stay numbers, and every form can be written."""
+    rng = np.random.default_rng([41, seed])
+    count = int(rng.choice([1, 2, 5, 30]))
+    bore = float(np.exp(rng.uniform(np.log(0.01), np.log(1.2))))
+    made = make_readings(
+        bore=bore,
+        length=float(np.exp(rng.uniform(np.log(40.0 * bore), np.log(5000.0)))),
+        roughness=bore * float(rng.choice([1e-6, 1e-3, 0.04])),
+        velocities=np.sort(rng.uniform(0.1, 5.0, count)),
+        viscosity=float(np.exp(rng.uniform(np.log(3e-7), np.log(3e-5)))),
+        noise=float(np.exp(rng.uniform(np.log(1e-7), np.log(2.0)))),
+        levelled=bool(rng.random() < 0.5),
+        senses=str(rng.choice(["volume", "velocity"])),
+        bore_relative=float(rng.choice([0.0, 0.003, 0.05])),
+    )
+    head = (made.head_loss_m, -made.head_loss_m, 0.0 * made.head_loss_m, rng.normal(0.0, 5.0, count))[seed % 4]
+    found = explain(replace(made, head_loss_m=head), Correlation(), (None, (2e-5, 1e-4))[seed % 2])
+    assert all(0.0 <= one.probability <= 1.0 for one in found.ranked)
+    finding = with_explanations(found)
+    json.loads(record_json(finding))
+    assert paragraph(found).endswith(".")
+    assert ranking(found, bore).rows
+    assert explanations(found).axes
