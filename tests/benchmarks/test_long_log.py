@@ -9,6 +9,10 @@ replaces it: from the file to plateaus with their means and noise, imports left 
 includes the start of the program, the fit, the page and the record; what of it grows with the file is shown by taking
 off the same command on a small log.
 
+Reading in two threads wins time only where a processor is free for each. On a machine that is busy with other work the
+shared processors, not the program, decide the time; then the ratio of processor time is held to the same limit, which
+is the harder test of the two.
+
 Accuracy is asserted against the ordinary averages over all rows in memory, plateau by plateau.
 """
 
@@ -29,17 +33,17 @@ from fieldfit.field.readings import Screening
 from fieldfit.field.section_file import read_section
 
 SIZES = (100_000, 1_000_000, 10_000_000)
-TURNS = 3
+TURNS = 2
 MOST_TIMES = 2.5
 MOST_MEGABYTES = 500.0
 WEIGHT = 9798.0
 TIMED = """
 import json, resource, sys, time
 {imports}
-start = time.perf_counter()
+start, busy = time.perf_counter(), time.process_time()
 {work}
-spent = time.perf_counter() - start
-print(json.dumps([spent, resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024.0]))
+spent = time.perf_counter() - start, time.process_time() - busy
+print(json.dumps([*spent, resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024.0]))
 """
 READER = TIMED.format(
     imports="import pandas",
@@ -78,14 +82,13 @@ def run(code, folder):
 
 
 def best_of(folder):
-    """Shortest time and largest memory of reader, statistics and whole command."""
+    """Shortest time, shortest processor time and largest memory of reader, statistics and whole command."""
     jobs = {"reader": READER, "statistics": STATISTICS, "command": COMMAND}
-    found = {name: [float("inf"), 0.0] for name in jobs}
+    turns = {name: [] for name in jobs}
     for _ in range(TURNS):
         for name, code in jobs.items():
-            seconds, megabytes = run(code, folder)
-            found[name] = [min(found[name][0], seconds), max(found[name][1], megabytes)]
-    return found
+            turns[name].append(run(code, folder))
+    return {name: (*np.min(found, axis=0)[:2], np.max(found, axis=0)[2]) for name, found in turns.items()}
 
 
 def worst_difference(folder, monkeypatch):
@@ -110,28 +113,35 @@ def worst_difference(folder, monkeypatch):
     )
 
 
+HEADINGS = (
+    ("rows", 11), ("read_csv", 10), ("statistics", 11), ("ratio", 6), ("of processor", 13), ("command", 9), ("ratio", 6),
+    ("less start", 11), ("peak", 8), ("means off", 10), ("errors off", 11), ("memory off", 11),
+)  # fmt: skip
+
+
 @pytest.mark.benchmark
 @pytest.mark.skipif(sys.platform == "win32", reason="peak memory is asked of the resource module")
 def test_long_logs(tmp_path, monkeypatch):
-    print(f"\n{'rows':>11}{'file':>9}{'read_csv':>10}{'statistics':>12}{'ratio':>7}{'command':>9}{'ratio':>7}", end="")
-    print(f"{'less start':>12}{'peak MB':>9}{'means off':>11}{'errors off':>12}{'memory off':>12}")
+    print("\n" + "".join(f"{name:>{width}}" for name, width in HEADINGS))
     start = None
     for rows in SIZES:
         folder = tmp_path / str(rows)
         path = write_long_log(folder, rows)
         best = best_of(folder)
         reader, statistics, command = (best[name][0] for name in ("reader", "statistics", "command"))
+        processor = best["statistics"][1] / best["reader"][1]
         start = start or command
-        peak = max(best[name][1] for name in ("statistics", "command"))
-        off = worst_difference(folder, monkeypatch) if rows < SIZES[-1] else None
-        size = path.stat().st_size / 1e6
-        print(f"{rows:11,}{size:6.0f} MB{reader:9.2f}s{statistics:11.2f}s{statistics / reader:7.2f}", end="")
-        print(f"{command:8.2f}s{command / reader:7.2f}{(command - start) / reader:12.2f}{peak:9.0f}", end="")
-        print("".join(f"{value:{width}.0e}" for value, width in zip(off, (11, 12, 12), strict=True)) if off else "")
-        assert peak <= MOST_MEGABYTES
-        if off is not None:
-            assert off[0] < 1e-3
-            assert max(off[1:]) < 1e-3
-        if rows == SIZES[-1]:
-            assert statistics <= MOST_TIMES * reader
+        peak = max(best[name][2] for name in ("statistics", "command"))
+        off = worst_difference(folder, monkeypatch)
         path.unlink()
+        cells = (
+            f"{rows:,}", f"{reader:.2f} s", f"{statistics:.2f} s", f"{statistics / reader:.2f}", f"{processor:.2f}",
+            f"{command:.2f} s", f"{command / reader:.2f}", f"{(command - start) / reader:.2f}", f"{peak:.0f} MB",
+            *(f"{value:.0e}" for value in off),
+        )  # fmt: skip
+        print("".join(f"{cell:>{width}}" for cell, (_, width) in zip(cells, HEADINGS, strict=True)), flush=True)
+        assert peak <= MOST_MEGABYTES
+        assert max(off) < 1e-3
+        if rows == SIZES[-1]:
+            busy = hasattr(os, "getloadavg") and os.getloadavg()[0] > os.cpu_count() + 0.5
+            assert (processor if busy else statistics / reader) <= MOST_TIMES
