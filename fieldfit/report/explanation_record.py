@@ -6,7 +6,7 @@ import math
 from typing import Any
 
 from fieldfit.decisions.stress_test import Stress
-from fieldfit.inference.beliefs import NOTHING
+from fieldfit.inference.beliefs import BELIEFS, NOTHING
 from fieldfit.inference.explanations import Explanation, Explanations
 from fieldfit.report.explanation_words import natural, next_step
 
@@ -47,6 +47,7 @@ def explanations_record(found: Explanations | None) -> Record | None:
             {"action": one.name, "text": one.text, "parts": list(one.parts), "standard_errors": _finite(one.separation)}
             for one in found.actions
         ],
+        "priors": {name: {"probability": belief.probability, "size": belief.size} for name, belief in BELIEFS.items()},
     }
 
 
