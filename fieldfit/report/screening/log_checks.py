@@ -34,6 +34,8 @@ FAULTS = {
 }
 """What to do about each kind of fault."""
 LONGER = "Hold each flow longer."
+FEW_VALUES = 5
+"""Different values of the liveliest column from which another one should not stand still."""
 HARDLY = 1e-4
 """Share of the smallest head loss that the steps leave under which they hardly count."""
 TREMBLING = "The readings tremble over their steps, so a mean lies between them."
@@ -50,7 +52,13 @@ def log_checks(
 ) -> tuple[Check, ...]:
     """Return the checks of a log as a whole."""
     return tuple(
-        [_aside(screening), _faults(screening), *_independent(log, screening, plateaus), *_resolution(reaches, steps)]
+        [
+            _aside(screening),
+            _faults(screening),
+            *_constant(log, steps),
+            *_independent(log, screening, plateaus),
+            *_resolution(reaches, steps),
+        ]
     )
 
 
@@ -89,6 +97,26 @@ def _faults(screening: Screening) -> Check:
         passed=share <= FAULTY,
         because=f"Faults of instruments, logger or direction: {listed}." if faults else "No row has a fault.",
         do="" if share <= FAULTY else " ".join(FAULTS[reason] for reason, _ in faults[:2]),
+        needed=False,
+    )
+
+
+def _constant(log: Log, steps: tuple[ChannelSteps, ...]) -> Iterator[Check]:
+    """Look for columns that never change while others do."""
+    if log.kind == "sheet" or max((one.values for one in steps), default=0) < FEW_VALUES:
+        return
+    still = [one.column for one in steps if one.constant]
+    yield Check(
+        what="Columns that never change",
+        value=float(len(still)),
+        limit=0.0,
+        at_most=True,
+        unit="-",
+        passed=not still,
+        because=f"'{', '.join(still)}' holds one value throughout, so its step is only known by how it is written."
+        if still
+        else "Every column moves.",
+        do="Check that the instrument is alive, and that its column is the right one." if still else "",
         needed=False,
     )
 

@@ -42,6 +42,7 @@ def steps(campaign: CampaignScreen) -> Table:
     for index, one in enumerate(campaign.steps):
         scale, unit = (1e3, "L/s") if index == 0 else (1e-3, "kPa")
         step = f"{significant(one.step * scale, 3)} {unit}" if one.step else "none seen"
+        step += ", as it is written" if one.constant and one.step else ""
         trembling = "–" if math.isnan(one.trembling) else f"{significant(one.trembling, 2)} steps"
         # Less than a thousandth of a step is nothing that anyone need see.
         small = one.standard < 1e-3 * one.step or one.standard == 0.0

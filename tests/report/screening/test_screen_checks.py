@@ -95,3 +95,17 @@ def test_limits_are_held_the_way_they_are_said(findings, name):
     for check in findings[name].campaigns[0].all_checks:
         if check.value is not None and not check.passed:
             assert check.value >= check.limit if check.at_most else check.value < check.limit
+
+
+def test_a_column_that_never_changes_is_doubted(tmp_path):
+    folder = brought("sound", tmp_path)
+    log = folder / "log.csv"
+    head, *rows = log.read_text(encoding="utf-8").splitlines()
+    frozen = [",".join([time, flow, "60", *rest]) for time, flow, _, *rest in (row.split(",") for row in rows)]
+    log.write_text("\n".join([head, *frozen]) + "\n", encoding="utf-8")
+    campaign = screen_logs(folder).campaigns[0]
+    assert any("'upstream' holds one value throughout" in check.because for check in campaign.checks)
+    upstream = campaign.steps[1]
+    assert upstream.constant
+    # A display that stands still may be off by half a step, however many rows repeat it.
+    assert upstream.standard == pytest.approx(1000.0 / 12.0**0.5)
