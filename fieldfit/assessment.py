@@ -71,8 +71,10 @@ def assess_each(section: Section, logs: tuple[str | Path, ...]) -> list[Campaign
 def _campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:
     """Assess one log with the section as it was on its day."""
     named = [one for one in section.campaigns if one.log.name == path.name]
-    found = assess_campaign(section_on(section, named[0] if named else None), path, date)
-    return replace(found, campaign=named[0]) if named else found
+    if not named:
+        return assess_campaign(section, path, date)
+    found = assess_campaign(section_on(section, named[0]), path, date or named[0].date)
+    return replace(found, campaign=named[0])
 
 
 def assess_campaign(section: Section, path: Path, date: dt.date | None) -> CampaignFinding:

@@ -10,6 +10,7 @@ from fieldfit.assessment import assess_each
 from fieldfit.decisions.ageing import ageing
 from fieldfit.decisions.visits import Visit, check_dates
 from fieldfit.errors import InputError
+from fieldfit.field.campaign_files import gather_parts, logs_beside
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
 from fieldfit.report.finding import CampaignFinding, Finding
@@ -23,7 +24,7 @@ def trend(section: str | Path | Section, *logs: str | Path) -> Finding:
     section : path or Section
         The section file, or the folder that holds it.
     *logs : path
-        Logs, one per campaign; without any, those that the section file names, else the folder's only CSV file.
+        Logs, one per campaign; without any, those that the section file names, else every log in the folder.
 
     Returns
     -------
@@ -36,8 +37,14 @@ def trend(section: str | Path | Section, *logs: str | Path) -> Finding:
         When a file cannot be used, or the campaigns cannot be put in order of time.
     """
     known = section if isinstance(section, Section) else read_section(Path(section))
-    finding = Finding(section=known, campaigns=tuple(assess_each(known, logs)))
+    finding = Finding(section=known, campaigns=tuple(assess_each(known, logs or _every_log(known))))
     return with_ageing(finding)
+
+
+def _every_log(section: Section) -> tuple[Path, ...]:
+    """Return all logs of a folder whose section file names no campaign; none where its files are parts of one."""
+    gathered, parts = gather_parts(section, ())
+    return () if gathered.campaigns or parts else tuple(logs_beside(section))
 
 
 def with_ageing(finding: Finding) -> Finding:

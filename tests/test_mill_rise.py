@@ -177,3 +177,20 @@ def test_sheets_without_a_date_cannot_be_put_in_order(tmp_path):
     found = assess(tmp_path)
     assert found.ageing == ()
     assert "has no date" in found.no_ageing
+
+
+def test_a_folder_of_dated_logs_needs_no_campaign_tables(tmp_path):
+    for log in MILL_RISE.glob("20*.csv"):
+        if log.name < "2018-05":
+            shutil.copy(log, tmp_path)
+    text = (MILL_RISE / "section.toml").read_text(encoding="utf-8")
+    bare = text[: text.index("[[campaign]]")] + text[text.index("[water]") :]
+    (tmp_path / "section.toml").write_text(bare, encoding="utf-8")
+    found = trend(tmp_path).ageing[0]
+    assert [visit.date.year for visit in found.visits] == [2008, 2013, 2018]
+
+
+def test_a_log_named_on_the_command_line_keeps_what_its_campaign_says():
+    found = assess(MILL_RISE, MILL_RISE / "2018-06-05.csv").campaigns[0]
+    assert (found.date, found.campaign.cleaned) == (dt.date(2018, 6, 5), True)
+    assert found.reaches[0].readings.meter.serial == "MAG-140"
