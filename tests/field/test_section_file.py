@@ -262,7 +262,8 @@ def test_lines_are_found_in_dotted_and_inline_tables(read):
         read(TOP + 'fluid = { density = "870", viscosity = "32 cSt" }\n' + FLOW + UPPER + LOWER)
 
 
-FLOW_KEYS = {"pipe": ("signal", "range"), "bore": ("unit", "pulse")}
+DEVICE_KEYS = ("device", "throat", "throat_pipe", "tappings")
+FLOW_KEYS = {"pipe": ("signal", "range", *DEVICE_KEYS), "bore": ("unit", "pulse", *DEVICE_KEYS)}
 
 
 def test_the_examples_in_the_list_of_keys_are_right(read):
