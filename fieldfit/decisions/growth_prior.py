@@ -171,7 +171,7 @@ def published_rate(outlook: Outlook, name: str | None) -> Belief:
         return Belief(
             median=lamont_rate(outlook.langelier),
             ln_standard=EIGHTFOLD,
-            source=f"Lamont's trends (1981) at a Langelier index of {outlook.langelier:g}",
+            source=f"Lamont's trends (1981) at a Langelier index of {outlook.langelier:g}".replace("-", "−"),
         )
     if outlook.ph is not None:
         return Belief(

@@ -96,9 +96,14 @@ def _growth_words(ageing: Ageing) -> str:
     """Say how fast it grows, and on what that stands."""
     rate = triple(ageing.rate_ahead_m_year, "mm", 1e3)
     if ageing.published:
+        why = (
+            "One test cannot tell how fast the wall grows"
+            if len(ageing.visits) == 1
+            else "No time between two tests is free of cleaning or lining, so the tests cannot tell how fast the wall grows"
+        )
         return (
-            "No stretch of time between two tests is free of cleaning or lining, so the campaigns cannot tell how fast the "
-            f"wall grows: the rate ahead is {ageing.rate.source}, taken wide. It comes to {rate} a year."
+            f"{why}: the rate stands on {ageing.rate.source}, taken wide, and on the wall as it was laid. Ahead it comes to "
+            f"{rate} a year."
         )
     name, share = max(ageing.growth.probabilities, key=lambda pair: pair[1])
     law = f"the {name} law" if share >= 0.9 else "laws averaged, for the tests do not decide between them"
@@ -147,6 +152,11 @@ def crossing_words(crossing: Crossing, ageing: Ageing) -> str:
     if crossing.never >= SURE:
         return f"{name} is not reached within {HORIZON_YEARS:.0f} years.{asked}"
     early, middle, late = crossing.dates
+    if crossing.already >= 0.5:
+        return (
+            f"{name} was crossed by the last test with a probability of {percent(crossing.already)}; with 90 % it is by "
+            f"{month(late)}.{asked}"
+        )
     return (
         f"{name} is reached by {month(middle)} with even odds, by {month(early)} with 10 % and by {month(late)} with "
         f"90 %.{asked}"

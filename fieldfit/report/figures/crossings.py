@@ -57,7 +57,7 @@ def crossings(ageing: Ageing) -> Figure:
     by = ageing.crossings[0].by
     if by is not None and last < year_of(by) < last + reach:
         ax.axvline(year_of(by), color=style.QUIET, linewidth=0.8, dashes=(1, 1.6))
-        style.write(ax, (year_of(by), 104.0), by.isoformat(), style.QUIET, ha="center", va="bottom", fontsize=6.5)
+        style.write(ax, (year_of(by), 1.0), f" {by.isoformat()}", style.QUIET, va="bottom", fontsize=6.5)
     style.label(ax, "year", "probability that it has been reached [%]")
     style.side_labels(ax, labels, 4.2)
     return figure

@@ -77,9 +77,9 @@ FAN_KEY = (
 def row_key(ax: Axes, height: float, entries: Sequence[tuple[str, str, str]]) -> None:
     """Explain marks side by side above the right half of some axes."""
     width = ax.get_position().width * style.WIDTH_MM
-    place = width + 4.0
+    place = width + 3.0
     for mark, colour, text in reversed(entries):
-        place -= 11.0 + 1.28 * len(text)
+        place -= 10.0 + 1.36 * len(text)
         style.key(ax, (place / width, height), [(mark, colour, text)])
         ax.lines[-1].set_clip_on(False)
 
@@ -89,7 +89,8 @@ def _ends(ageing: Ageing) -> tuple[float, float]:
     first, last = year_of(ageing.points[0].date), year_of(ageing.points[-1].date)
     start = year_of(ageing.stages[0].start)
     wide = max(last - first, 4.0)
-    low = start if first - start < 1.5 * wide else first - 0.15 * wide
+    alone = len(ageing.points) == 1
+    low = start if alone or first - start < 1.5 * wide else first - 0.15 * wide
     return low - 0.02 * wide, last + 0.06 * (last - low)
 
 
