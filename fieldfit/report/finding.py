@@ -30,6 +30,7 @@ class ScreenedLog(Protocol):
     def plateaus(self) -> Plateaus:
         """Its steady windows."""
 
+
 if TYPE_CHECKING:
     from fieldfit.decisions.ageing import Ageing
     from fieldfit.decisions.deposit import DepositFinding

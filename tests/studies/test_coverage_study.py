@@ -2,7 +2,6 @@
 
 Run it with ``pytest -m slow -s tests/studies``.
 """
-# ruff: noqa: T201  (the table it prints is what the study is for)
 
 from __future__ import annotations
 

@@ -3,7 +3,6 @@
 Run it with ``pytest -m slow -s tests/studies/test_service_log_study.py``.
 """
 
-
 from __future__ import annotations
 
 import numpy as np
