@@ -11,6 +11,7 @@ from fieldfit.decisions.ageing import ageing
 from fieldfit.decisions.visits import Visit, check_dates
 from fieldfit.errors import InputError
 from fieldfit.field.campaign_files import gather_parts, logs_beside
+from fieldfit.field.reach_pipe import section_of_reach
 from fieldfit.field.section import Section
 from fieldfit.field.section_file import read_section
 from fieldfit.report.finding import CampaignFinding, Finding
@@ -64,8 +65,8 @@ def with_ageing(finding: Finding) -> Finding:
     if until is not None and last is not None and until <= last:
         seen = f"the forecast is to end on {until}, before the last test of {last}"
         raise InputError(seen, "Write until = 2046-01-01 in [growth], a later day.", section.path.name)
-    reaches = [_visits(campaigns, number) for number in range(len(section.taps) - 1)]
-    found = [ageing(section, visits) for visits in reaches if any(v.wall.state != "no estimate" for v in visits)]
+    reaches = [(section_of_reach(section, k), _visits(campaigns, k)) for k in range(len(section.taps) - 1)]
+    found = [ageing(one, visits) for one, visits in reaches if any(v.wall.state != "no estimate" for v in visits)]
     return replace(finding, ageing=tuple(found))
 
 
