@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from fieldfit.field.averages import difference_slopes, rest_difference, summarise
 from fieldfit.field.log import Log
-from fieldfit.field.log_form import log_form, say_form
+from fieldfit.field.log_form import log_form
 from fieldfit.field.log_headings import find_headings
 from fieldfit.field.log_source import log_source
 from fieldfit.field.long_ends import mean_changes
@@ -102,7 +102,6 @@ def read_long_log(log: LongSource, weight_pa_m: float, tell: Tell | None = None)
     told = tell or (lambda share: None)
     with RowStore(_kinds(log), _bytes_needed(log)) as store:
         rows = long_rows(log, store, lambda share: told(READ_SHARE * share))
-        say_form(log.form.rows.headings, log.form.rows.decimal, log.said)
         found, screening, plateaus = _judged(rows, log, weight_pa_m, told)
         told(1.0)
     assumed = tuple(dict.fromkeys(log.said))

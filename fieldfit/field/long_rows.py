@@ -16,14 +16,15 @@ from numpy.typing import NDArray
 
 from fieldfit.errors import InputError
 from fieldfit.field.channel_values import flow_of, flow_step, pressure_steps, pressures_of
+from fieldfit.field.even_sample import Sample
 from fieldfit.field.line_blocks import BlockSource, LineBlock, line_blocks
 from fieldfit.field.log_clock import log_clock
-from fieldfit.field.log_form import LogForm
+from fieldfit.field.log_form import LogForm, say_form
 from fieldfit.field.log_rows import Rows, read_rows
 from fieldfit.field.log_source import LogSource
 from fieldfit.field.long_clock import LongClock
 from fieldfit.field.plain_rows import PlainRows, plain_rows
-from fieldfit.field.resolution import SAMPLE, written_step
+from fieldfit.field.resolution import written_step
 from fieldfit.field.row_store import RowStore
 from fieldfit.field.section import Section
 from fieldfit.field.units import shown
@@ -32,6 +33,8 @@ Array = NDArray[np.float64]
 Whole = NDArray[np.int64]
 Tell = Callable[[float], None]
 
+MOST_LINES_TOLD = 10
+"""Lines that are named one by one in sentences on what was assumed."""
 READERS = 2
 """Blocks that are read at the same time; the parser leaves the interpreter to others meanwhile."""
 
@@ -101,7 +104,7 @@ def long_rows(log: LongSource, store: RowStore, tell: Tell) -> LongRows:
     """
     reader = _Reader(log, store)
     line = log.form.rows.headings.line + 1
-    for block, plain in _read_ahead(log):
+    for block, plain in _read_ahead(log, reader):
         if plain is not None and reader.clock.begun:
             count = len(next(iter(plain.numbers.values())))
             reader.keep(np.arange(line, line + count), plain.numbers, reader.time_of(plain))
@@ -113,7 +116,7 @@ def long_rows(log: LongSource, store: RowStore, tell: Tell) -> LongRows:
     return reader.outcome()
 
 
-def _read_ahead(log: LongSource) -> Iterator[tuple[LineBlock, PlainRows | None]]:
+def _read_ahead(log: LongSource, reader: _Reader) -> Iterator[tuple[LineBlock, PlainRows | None]]:
     """Yield the blocks in order, each read at full speed where it can be, while the next ones are being read."""
     import pandas as pd  # noqa: F401  a first import in two threads at once would wait for itself
 
@@ -124,7 +127,7 @@ def _read_ahead(log: LongSource) -> Iterator[tuple[LineBlock, PlainRows | None]]
     with ThreadPoolExecutor(READERS) as pool:
         try:
             for block in line_blocks(log.source, form.rows.headings.line):
-                waiting.append((block, pool.submit(plain_rows, block, form.rows, clock, gaps)))
+                waiting.append((block, pool.submit(plain_rows, block, reader.form.rows, clock, gaps)))
                 if len(waiting) > READERS + 1:
                     ready, result = waiting.popleft()
                     plain = result.result()
@@ -142,7 +145,8 @@ class _Reader:
     """Takes blocks in order and keeps note of what the screens need to know of the whole log."""
 
     def __init__(self, log: LongSource, store: RowStore) -> None:
-        self._log, self._store, self._form = log, store, log.form
+        self._log, self._store, self.form = log, store, log.form
+        self._lines_told = 0
         self._columns = log.form.columns.instruments
         self.clock = LongClock(log.form.columns.time, log.source.path.name, log.said)
         self._samples = {name: Sample() for name in self._columns}
@@ -159,27 +163,47 @@ class _Reader:
 
     def carefully(self, block: LineBlock, line: int) -> None:
         """Read and keep a block as an ordinary log is read; `line` is its first line."""
-        source, form, said = self._log.source, self._form.rows, list[str]()
+        source, form, said = self._log.source, self.form.rows, list[str]()
         here = replace(form, headings=replace(form.headings, line=0))
         one = BlockSource(path=source.path, sha256=source.sha256, encoding="utf-8", block=block)
         try:
             rows, decimal = read_rows(one, here, said)
-            if decimal != form.decimal:
-                self._form = replace(self._form, rows=replace(form, decimal=decimal))
+            self._take_mark(decimal, source.path.name)
             time = self._clock(rows, said)
         except InputError as error:
             raise moved(error, source.path.name, line - 1) from None
-        self._log.said.extend(moved_sentence(sentence, line - 1) for sentence in said)
+        self._say([moved_sentence(sentence, line - 1) for sentence in said])
         self.keep(rows.line + line - 1, dict(rows.numbers), time)
+
+    def _take_mark(self, decimal: str, file: str) -> None:
+        """Go on with the decimal mark that was found, unless rows before were written with the other one."""
+        if decimal == self.form.rows.decimal:
+            return
+        if any(np.any(sample.values % 1.0) for sample in self._samples.values()):
+            seen = "rows from here on have another decimal mark than those above"
+            advice = "Export the log with one decimal mark throughout and no thousands separators."
+            raise InputError(seen, advice, f"{file}:1")
+        self.form = replace(self.form, rows=replace(self.form.rows, decimal=decimal))
+
+    def _say(self, said: list[str]) -> None:
+        """Keep sentences on what was assumed, of those on single lines only the first ones."""
+        lines = [sentence for sentence in said if sentence.startswith("Line ")]
+        for one in said:
+            sentence = one
+            if one in lines and self._lines_told >= MOST_LINES_TOLD:
+                sentence = "More such lines follow further down."
+            self._lines_told += sentence in lines
+            if sentence not in self._log.said:
+                self._log.said.append(sentence)
 
     def _clock(self, rows: Rows, said: list[str]) -> Array:
         """Return the time of carefully read rows [s since the log's first row]."""
-        column = self._form.columns.time
+        column = self.form.columns.time
         if rows.line.size == 0 or column is None:
             return np.full(rows.line.size, np.nan)
         if not self.clock.begun:
             known = (Path(self._log.source.path), self._log.section)
-            clock, _ = log_clock(rows, column, self._form.above, known, said)
+            clock, _ = log_clock(rows, column, self.form.above, known, said)
             self.clock.begin(clock.start)
         if column.unit is not None:
             return self.clock.of_numbers(rows.numbers)
@@ -205,7 +229,7 @@ class _Reader:
 
     def _temperature(self, numbers: dict[int, Array]) -> Array | None:
         """Return the liquid's temperature [°C], None for a log without."""
-        column = self._form.columns.temperature
+        column = self.form.columns.temperature
         if column is None:
             return None
         warm = numbers[column.position] * column.unit.factor + column.unit.offset
@@ -214,10 +238,11 @@ class _Reader:
 
     def outcome(self) -> LongRows:
         """Check the columns as wholes and return the rows."""
-        form, file, section = self._form, self._log.source.path.name, self._log.section
+        form, file, section = self.form, self._log.source.path.name, self._log.section
         if self._store.rows == 0:
             where = f"{file}:{form.rows.headings.line}"
             raise InputError("no rows stand below the headings", "Export the log again.", where)
+        say_form(form.rows.headings, form.rows.decimal, self._log.said)
         values, steps = {}, {}
         for name, column in self._columns.items():
             sample = self._samples[name].values
@@ -238,7 +263,7 @@ class _Reader:
 
     def _has_temperature(self) -> bool:
         """Return whether any row has a temperature, and say where it is missing."""
-        column, rows = self._form.columns.temperature, self._store.rows
+        column, rows = self.form.columns.temperature, self._store.rows
         if column is None or not self._absent:
             return column is not None
         if self._absent == rows:
@@ -248,27 +273,6 @@ class _Reader:
             f"The temperature is missing in {self._absent} of {rows} rows; the others stand for them."
         )
         return True
-
-
-class Sample:
-    """Values of a column, evenly spaced and few, however long the column is."""
-
-    def __init__(self) -> None:
-        self._stride, self._skip, self._taken = 1, 0, np.empty(0)
-
-    def add(self, values: Array) -> None:
-        """Take every so many of the finite values."""
-        finite = values[np.isfinite(values)]
-        self._taken = np.append(self._taken, finite[self._skip :: self._stride])
-        self._skip = (self._skip - len(finite)) % self._stride
-        while len(self._taken) > 2 * SAMPLE:
-            self._skip += self._stride if len(self._taken) % 2 else 0
-            self._taken, self._stride = self._taken[::2].copy(), 2 * self._stride
-
-    @property
-    def values(self) -> Array:
-        """What was taken."""
-        return self._taken
 
 
 def moved(error: InputError, file: str, lines: int) -> InputError:

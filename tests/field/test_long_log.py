@@ -16,8 +16,9 @@ from fieldfit import progress
 from fieldfit.assessment import assess
 from fieldfit.cli import main
 from fieldfit.errors import InputError
-from fieldfit.field import line_blocks, long_log, long_rows, long_screens, row_runs, row_store
+from fieldfit.field import line_blocks, long_log, long_screens, row_runs, row_store
 from fieldfit.field.clock import repeated_or_backwards
+from fieldfit.field.even_sample import Sample
 from fieldfit.field.log_file import read_log
 from fieldfit.field.long_log import open_long_log, read_long_log
 from fieldfit.field.plateaus import screen, summarise
@@ -156,6 +157,36 @@ def test_rows_are_set_aside_for_the_same_reasons(tmp_path, request, cut):
     assert reason[np.flatnonzero(log.line == 20_000)[0]] == OUTLIER
     assert np.all((plateau > 0) == (reason == ""))
     assert parts.runs.total == SMALL == parts.used + sum(count for _, count in parts.counts)
+
+
+def test_two_decimal_marks_in_one_log_are_refused(tmp_path, tiny_parts):
+    path = write_long_log(tmp_path, SMALL)
+    names, *rows = path.read_text().replace(",", ";").splitlines()
+    rows[15_000:] = [row.partition(";")[0] + row[row.index(";") :].replace(".", ",") for row in rows[15_000:]]
+    path.write_text("\n".join([names, *rows]) + "\n")
+    with pytest.raises(InputError, match=r"log\.csv(:1[45]\d\d\d)?: .*decimal (mark|one)"):
+        in_parts(path)
+
+
+def test_commas_that_come_late_are_understood(tmp_path, tiny_parts):
+    path = write_long_log(tmp_path, SMALL)
+    names, *rows = path.read_text().replace(",", ";").splitlines()
+    whole = [f"{row.split(';')[0]};0;599;595;15" for row in rows[:5_000]]
+    path.write_text("\n".join([names, *whole, *(row.replace(".", ",") for row in rows[5_000:])]) + "\n")
+    log, _, plateaus = in_parts(path)
+    assert len(plateaus.number) == len(LEVELS_M_S)
+    assert np.max(plateaus.flow_m3_s) == pytest.approx(0.0441, rel=0.01)
+    assert "Commas in numbers are decimal marks." in log.assumed
+
+
+def test_a_hundred_footers_make_a_few_sentences(tmp_path, tiny_parts):
+    path = write_long_log(tmp_path, SMALL)
+    names, *rows = path.read_text().splitlines()
+    pieces = [line for first in range(0, SMALL, 240) for line in (*rows[first : first + 240], "Average,1,2,3,4")]
+    path.write_text("\n".join([names, *pieces]) + "\n")
+    log, screening, _ = in_parts(path)
+    assert screening.runs.total == SMALL
+    assert 3 < len(log.assumed) < 20
 
 
 MISTAKES = {
@@ -343,7 +374,7 @@ def test_fates_that_change_all_the_time_are_counted_in_windows(monkeypatch):
 
 
 def test_a_sample_is_even_and_bounded():
-    sample = long_rows.Sample()
+    sample = Sample()
     values = np.arange(100_003.0)
     for part in np.array_split(values, 37):
         sample.add(part)
