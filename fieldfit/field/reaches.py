@@ -20,9 +20,7 @@ from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 Array = NDArray[np.float64]
 
 
-def reach_readings(
-    plateaus: Plateaus, section: Section, reach: int, *, every_turbulent: bool = False
-) -> ReachReadings:
+def reach_readings(plateaus: Plateaus, section: Section, reach: int, *, every_turbulent: bool = False) -> ReachReadings:
     """Work out the head losses of one reach and set aside the plateaus that carry no roughness.
 
     With a static in the log the gauges are levelled on it, drift between statics shared out over time; without
