@@ -7,8 +7,9 @@ from collections.abc import Mapping
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.constrictions import constriction_flow
 from fieldfit.field.differential import log_pressures, log_steps
-from fieldfit.field.flow_devices import constriction_flow, pitot_flow
+from fieldfit.field.flow_devices import pitot_flow
 from fieldfit.field.section import Section
 
 Array = NDArray[np.float64]

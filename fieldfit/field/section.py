@@ -7,9 +7,10 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Literal
 
+from fieldfit.field.constrictions import Throat
 from fieldfit.field.contract import Contract
 from fieldfit.field.differential import Differential
-from fieldfit.field.flow_devices import Outlet, Throat
+from fieldfit.field.flow_devices import Outlet
 from fieldfit.field.log_hints import LogHints
 from fieldfit.field.logger_clock import Logger
 from fieldfit.field.outlook import Changes, Outlook

@@ -11,16 +11,9 @@ from fieldfit.field.quantities import quantity
 from fieldfit.field.section import Campaign, Correlation, Fitting, Section, Tap
 from fieldfit.field.section_bore_evidence import read_bore_evidence, read_deposit
 from fieldfit.field.section_contract import read_contract
-from fieldfit.field.section_devices import (
-    fill_in,
-    read_device,
-    read_differential,
-    read_loggers,
-    read_wave_speed,
-    said_of_devices,
-    texts,
-)
+from fieldfit.field.section_devices import fill_in, read_device, read_differential, said_of_devices
 from fieldfit.field.section_log import read_log_hints
+from fieldfit.field.section_loggers import read_loggers, read_wave_speed, texts
 from fieldfit.field.section_outlook import read_changes, read_cleaned, read_outlook
 from fieldfit.field.section_pipe import Pipe, read_duty, read_fittings, read_liquid, read_pipe, read_temperature
 from fieldfit.field.section_screen import read_screen_limits, read_screen_mode

@@ -5,7 +5,8 @@ import pytest
 
 from fieldfit.assessment import assess
 from fieldfit.errors import InputError
-from fieldfit.field.flow_devices import Outlet, Throat, constriction_accuracy, constriction_flow, pitot_accuracy
+from fieldfit.field.constrictions import Throat, constriction_accuracy, constriction_flow
+from fieldfit.field.flow_devices import Outlet, pitot_accuracy
 from fieldfit.field.log_file import read_log
 from fieldfit.field.section_file import read_section
 from fieldfit.field.uncertain import Accuracy, Uncertain

@@ -7,17 +7,9 @@ import numpy as np
 import pytest
 from chemicals import iapws95_rho
 
+from fieldfit.field.constrictions import Throat, coefficient_standard, constriction_flow
 from fieldfit.field.differential import hose_head
-from fieldfit.field.flow_devices import (
-    OUTLET_COEFFICIENTS,
-    Outlet,
-    Throat,
-    coefficient_standard,
-    constriction_flow,
-    flow_at_residual,
-    pitot_flow,
-    pumper_factor,
-)
+from fieldfit.field.flow_devices import OUTLET_COEFFICIENTS, Outlet, flow_at_residual, pitot_flow, pumper_factor
 from fieldfit.field.uncertain import Accuracy, Uncertain
 
 INCH, PSI, GPM = 0.0254, 6894.757293168361, 231.0 * 0.0254**3 / 60.0
