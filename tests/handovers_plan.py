@@ -11,7 +11,7 @@ from fieldfit.decisions.expected import planned_readings
 from fieldfit.hydraulics.friction import relative_roughness
 from fieldfit.inference.fit import fit_reach
 from fieldfit.inference.head_model import head_model
-from fieldfit.inference.prediction import Duty, predict
+from fieldfit.inference.prediction import OperatingPoint, predict
 
 GRAVITY = 9.80665
 
@@ -46,10 +46,10 @@ def spread_found(section, layout, roughness, *, tests, seed):
         read = read + rng.normal(0.0, exact.levelling.standard_m) + rng.normal(0.0, exact.random_m)
         model = head_model(replace(exact, head_loss_m=read), section.correlation)
         fit = fit_reach(model)
-        duty = Duty(flow_m3_s=model.reference.flow_m3_s, viscosity_m2_s=model.reference.viscosity_m2_s)
-        found = predict(fit, duty, section.correlation).friction.hazen_williams_c.value
-        slope = np.interp(duty.flow_m3_s, flow, head) / true_length
-        truth = duty.flow_m3_s / area / (0.849182 * (true_bore / 4.0) ** 0.63 * slope**0.54)
+        point = OperatingPoint(flow_m3_s=model.reference.flow_m3_s, viscosity_m2_s=model.reference.viscosity_m2_s)
+        found = predict(fit, point, section.correlation).friction.hazen_williams_c.value
+        slope = np.interp(point.flow_m3_s, flow, head) / true_length
+        truth = point.flow_m3_s / area / (0.849182 * (true_bore / 4.0) ** 0.63 * slope**0.54)
         ln_c.append(np.log(found / truth))
         wall = float(relative_roughness(np.exp(fit.ln_friction), model.reference.reynolds)) * bore.value
         ln_roughness.append(np.log(wall / roughness))

@@ -23,7 +23,7 @@ from fieldfit.decisions.contract_scale import Scale, built_on, counted, scale_of
 from fieldfit.field.contract import Contract
 from fieldfit.field.section import Section
 from fieldfit.inference.fit import Fit
-from fieldfit.inference.prediction import Duty, predict
+from fieldfit.inference.prediction import OperatingPoint, predict
 
 NORMAL_95 = 1.959963984540054
 DEFAULT_RISK = 0.05
@@ -105,15 +105,15 @@ def judge_contract(fit: Fit, contract: Contract, section: Section) -> Acceptance
     flow = contract.flow_m3_s or reference.flow_m3_s
     temperature = reference.temperature_degc if contract.temperature_degc is None else contract.temperature_degc
     viscosity = float(section.liquid.viscosity_m2_s(np.array([temperature]))[0])
-    duty = Duty(flow_m3_s=flow, viscosity_m2_s=viscosity)
-    prediction = predict(fit, duty, section.correlation)
+    point = OperatingPoint(flow_m3_s=flow, viscosity_m2_s=viscosity)
+    prediction = predict(fit, point, section.correlation)
     bore = contract.bore_m or readings.bore.value
-    scale, why = scale_of(fit, contract, section, duty)
+    scale, why = scale_of(fit, contract, section, point)
     rule: Rule = next(rule for rule in RULES if rule == contract.rule)
     risk = contract.risk or DEFAULT_RISK
     outcome = decide(scale.known, scale.tolerance, rule, risk)
     accepting, rejecting = _limits(scale, rule, risk)
-    built, words = built_on(contract, section, duty, scale)
+    built, words = built_on(contract, section, point, scale)
     half = NORMAL_95 * scale.known.standard
     ends = sorted((scale.back(scale.known.mean - half), scale.back(scale.known.mean + half)))
     return Acceptance(

@@ -17,7 +17,7 @@ from fieldfit.hydraulics.friction import colebrook_white, relative_roughness
 from fieldfit.hydraulics.hazen_williams import c_from_head_loss, c_of_roughness
 from fieldfit.hydraulics.materials import material
 from fieldfit.inference.fit import Fit, covariance
-from fieldfit.inference.prediction import C_BY_BORE, C_BY_LOSS, Duty, Loss, Predicted, Prediction, predict
+from fieldfit.inference.prediction import C_BY_BORE, C_BY_LOSS, Loss, OperatingPoint, Predicted, Prediction, predict
 
 NORMAL_95 = 1.959963984540054
 SHARPER = 3.0
@@ -52,13 +52,13 @@ class Scale:
     """Better measurements with the standard uncertainty after each."""
 
 
-def scale_of(fit: Fit, contract: Contract, section: Section, duty: Duty) -> tuple[Scale, str]:
+def scale_of(fit: Fit, contract: Contract, section: Section, point: OperatingPoint) -> tuple[Scale, str]:
     """Return the measured value on a scale for the decision, and which errors its band holds and why."""
     if contract.subject == "roughness":
         return _roughness_scale(fit, contract, section)
 
     def known(better: NDArray[np.float64] | None = None) -> Predicted:
-        return _found(fit, contract, predict(fit, duty, section.correlation, better))
+        return _found(fit, contract, predict(fit, point, section.correlation, better))
 
     found, end = known(), math.log(contract.limit)
     scale = Scale(
@@ -124,7 +124,7 @@ def _better(fit: Fit) -> list[tuple[str, NDArray[np.float64]]]:
     return found
 
 
-def built_on(contract: Contract, section: Section, duty: Duty, scale: Scale) -> tuple[Knowledge | None, str]:
+def built_on(contract: Contract, section: Section, point: OperatingPoint, scale: Scale) -> tuple[Knowledge | None, str]:
     """Return what is usually built, on the decision's scale, and whose word that is."""
     if contract.built is not None:
         return _built_by_word(contract, contract.built, scale), "what the section file says is usually built"
@@ -136,7 +136,7 @@ def built_on(contract: Contract, section: Section, duty: Duty, scale: Scale) -> 
     else:
         level *= abs(C_BY_LOSS)
         shift = C_BY_BORE * math.log((contract.bore_m or bore) / bore)
-        c = c_of_roughness(np.array(new.roughness_m), duty.flow_m3_s, bore, duty.viscosity_m2_s)
+        c = c_of_roughness(np.array(new.roughness_m), point.flow_m3_s, bore, point.viscosity_m2_s)
         ends = [math.log(value) + shift for value in c.tolist()]
     # The table's range read as 95 %, and the correlation's limit on top: real pipes do not follow it exactly.
     own = abs(ends[2] - ends[0]) / (2.0 * NORMAL_95)

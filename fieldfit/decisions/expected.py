@@ -14,7 +14,7 @@ from fieldfit.field.wishes import Wishes
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY, colebrook_white, relative_roughness
 from fieldfit.inference.fit import Fit, fit_known
 from fieldfit.inference.head_model import head_model
-from fieldfit.inference.prediction import Duty, predict
+from fieldfit.inference.prediction import OperatingPoint, predict
 
 Array = NDArray[np.float64]
 
@@ -98,12 +98,12 @@ def expected(section: Section, wishes: Wishes, layout: Layout, roughness_m: floa
     reynolds, bore = model.reference.reynolds, section.bore.value
     factor = float(colebrook_white(reynolds, roughness_m / bore))
     fit = fit_known(model, float(np.log(factor)))
-    duty = Duty(flow_m3_s=model.reference.flow_m3_s, viscosity_m2_s=model.reference.viscosity_m2_s)
-    c = predict(fit, duty, section.correlation).friction.hazen_williams_c
+    point = OperatingPoint(flow_m3_s=model.reference.flow_m3_s, viscosity_m2_s=model.reference.viscosity_m2_s)
+    c = predict(fit, point, section.correlation).friction.hazen_williams_c
     sensitivity = _roughness_by_friction(factor, reynolds)
     return Expected(
         roughness_m=roughness_m,
-        flow_m3_s=duty.flow_m3_s,
+        flow_m3_s=point.flow_m3_s,
         largest_loss_m=float(np.max(readings.head_loss_m)),
         hazen_williams_c=c.value,
         ln_c=c.measurement,

@@ -27,7 +27,7 @@ C_BY_BORE = -2.63
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Duty:
+class OperatingPoint:
     """What the pipe is asked for."""
 
     flow_m3_s: float
@@ -55,7 +55,7 @@ class Predicted:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Loss:
-    """A head loss at a duty and the C it means, with or without fittings."""
+    """A head loss at an operating point and the C it means, with or without fittings."""
 
     head_loss_m: Predicted
     """Head loss of the reach [m]."""
@@ -67,7 +67,7 @@ class Loss:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Prediction:
-    """What a fitted reach does at a duty."""
+    """What a fitted reach does at an operating point."""
 
     friction: Loss
     """Friction alone."""
@@ -81,18 +81,18 @@ class Prediction:
     """How far the Reynolds number lies outside those tested [decades]; 0 within them."""
 
 
-def predict(fit: Fit, duty: Duty, limit: Correlation, better: Array | None = None) -> Prediction:
+def predict(fit: Fit, point: OperatingPoint, limit: Correlation, better: Array | None = None) -> Prediction:
     """Say what a fitted reach does at a flow.
 
     Within the flows tested the fit interpolates and the correlation's level does not enter. Outside them the
     correlation carries the curve on: its error is then the difference of a squared-exponential process between the
-    end of the tested range and the duty.
+    end of the tested range and that flow.
 
     Parameters
     ----------
     fit : Fit
         The fitted reach.
-    duty : Duty
+    point : OperatingPoint
         Flow and viscosity asked for.
     limit : Correlation
         How far friction correlations can be trusted.
@@ -106,10 +106,10 @@ def predict(fit: Fit, duty: Duty, limit: Correlation, better: Array | None = Non
     readings, errors = fit.model.readings, fit.model.errors
     bore = readings.bore.value * float(np.exp(fit.u @ errors.ln_bore))
     length = readings.length.value * float(np.exp(fit.u @ errors.ln_length))
-    reynolds = 4.0 * duty.flow_m3_s / (np.pi * bore * duty.viscosity_m2_s)
+    reynolds = 4.0 * point.flow_m3_s / (np.pi * bore * point.viscosity_m2_s)
     curve = friction_curve(np.array([fit.ln_friction]), np.array([reynolds]), np.array([fit.model.reference.reynolds]))
     shape = _shape_at(fit, reynolds)
-    velocity_head = 8.0 * duty.flow_m3_s**2 / (np.pi**2 * STANDARD_GRAVITY * bore**4)
+    velocity_head = 8.0 * point.flow_m3_s**2 / (np.pi**2 * STANDARD_GRAVITY * bore**4)
     friction_m = float(curve.friction_factor[0] * np.exp(fit.u @ shape)) * length / bore * velocity_head
     whole_m = friction_m + (readings.fitting_k.value + float(fit.u @ errors.fitting_k)) * velocity_head
     # Slopes of ln head loss in the wall and in every shared error; the fittings' part goes with D⁻⁴ and K alone.
@@ -124,13 +124,13 @@ def predict(fit: Fit, duty: Duty, limit: Correlation, better: Array | None = Non
         fit=fit,
         covariance=covariance(fit, better),
         bore_and_length_m=(bore, length),
-        flow_m3_s=duty.flow_m3_s,
+        flow_m3_s=point.flow_m3_s,
         drift=limit.standard * float(np.sqrt(2.0 * (1.0 - np.exp(-0.5 * (outside / limit.decades) ** 2)))),
     )
     return Prediction(
         friction=spread.loss(friction_m, friction),
         whole=spread.loss(whole_m, whole),
-        flow_m3_s=duty.flow_m3_s,
+        flow_m3_s=point.flow_m3_s,
         reynolds=reynolds,
         decades_outside=outside,
     )
