@@ -346,6 +346,11 @@ def test_record_and_audit_add_up(main_log, short_is_long, tmp_path, capsys):
     assert "one line for each run of rows" in page.read_text(encoding="utf-8")
 
 
+def test_screening_a_long_log_tells_its_real_interval(main_log, short_is_long, tmp_path, capsys):
+    assert main(["screen", str(main_log.parent), "--out", str(tmp_path)]) == 0
+    assert "200 000 rows, 0.05 s apart" in capsys.readouterr().out.replace("\u00a0", " ").replace("\u202f", " ")
+
+
 def test_a_plateau_that_carries_no_roughness_is_set_aside_in_runs(main_log, short_is_long):
     finding = assess(replace(read_section(main_log.parent / "section.toml"), screen_limits=(("turbulent", 1.5e5),)))
     campaign = finding.campaigns[0]

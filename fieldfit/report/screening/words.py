@@ -69,6 +69,9 @@ def extent(campaign: CampaignScreen) -> str:
     rows = f"{fixed(log.rows, 0)} rows"
     told = log.time_s[np.isfinite(log.time_s)]
     steps = np.diff(told)
+    if log.rows_in_file is not None:
+        # Only some rows are here; lines tell how many lie between.
+        steps = steps / np.diff(log.line[np.isfinite(log.time_s)])
     if log.kind == "sheet" or not np.any(steps > 0.0):
         return rows
     apart = duration(float(np.median(steps[steps > 0.0])))
