@@ -5,7 +5,7 @@ gigabyte of disk and is deleted afterwards; so are temporary columns of about th
 
 The reader is ``pandas.read_csv(engine="c", parse_dates=["time"])`` on the same file, in a process of its own like the
 others; turns are taken, so that a busy machine hits all alike, and the shortest of each counts. *Statistics* is what
-replaces it: from the file to plateaus with their means and noise, imports left out on both sides. The *whole command*
+replaces it: from the file to plateaus with their means and noise, imports and the section file left out. The *whole command*
 includes the start of the program, the fit, the page and the record; what of it grows with the file is shown by taking
 off the same command on a small log.
 
@@ -61,9 +61,10 @@ import pandas, scipy.fft, scipy.special
 from fieldfit.field import long_log
 from fieldfit.field.section_file import read_section
 long_log.LONG_LOG_BYTES = 1
+section = read_section(Path(sys.argv[1]) / "section.toml")
+section.liquid.density_kg_m3(section.temperature.value)
 """,
     work=f"""
-section = read_section(Path(sys.argv[1]) / "section.toml")
 long_log.read_long_log(long_log.open_long_log(Path(sys.argv[1]) / "log.csv", section), {WEIGHT})
 """,
 )
