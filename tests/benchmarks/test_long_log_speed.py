@@ -1,6 +1,6 @@
 """Long logs: time beside pandas' own reader, peak memory, and accuracy, all in one run.
 
-Run it with ``pytest -m benchmark -s tests/benchmarks/test_long_log.py``. The file of ten million rows takes half a
+Run it with ``pytest -m benchmark -s tests/benchmarks/test_long_log_speed.py``. The file of ten million rows takes half a
 gigabyte of disk and is deleted afterwards; so are temporary columns of about the same size.
 
 The reader is ``pandas.read_csv(engine="c", parse_dates=["time"])`` on the same file, in a process of its own like the
