@@ -18,7 +18,8 @@ class Sample:
 
     def add(self, values: Array) -> None:
         """Take every so many of the finite values."""
-        finite = values[np.isfinite(values)]
+        known = np.isfinite(values)
+        finite = values if known.all() else values[known]
         self._taken = np.append(self._taken, finite[self._skip :: self._stride])
         self._skip = (self._skip - len(finite)) % self._stride
         while len(self._taken) > 2 * SAMPLE:

@@ -65,8 +65,9 @@ def line_blocks(source: LogSource, skip: int) -> Iterator[LineBlock]:
     for piece, read in _pieces(source, skip):
         cut = piece.rfind(b"\n") + 1
         if cut:
-            yield LineBlock(text=left + piece[:cut], share=min(read / size, 1.0))
-            left = piece[cut:]
+            whole = not left and cut == len(piece)
+            yield LineBlock(text=piece if whole else left + piece[:cut], share=min(read / size, 1.0))
+            left = b"" if whole else piece[cut:]
             continue
         left += piece
         if len(left) > LONGEST_LINE:
@@ -87,6 +88,9 @@ def _pieces(source: LogSource, skip: int) -> Iterator[tuple[bytes, int]]:
             left, start = left - start, 0
         wanted = FIRST_BYTES
         while piece := file.read(min(wanted, max(left, 0))):
+            if decoder is None:
+                # To the end of the line, so that nothing need be put together afterwards.
+                piece += file.readline(min(LONGEST_LINE, left - len(piece)))
             left -= len(piece)
             wanted = BLOCK_BYTES
             if decoder is not None:

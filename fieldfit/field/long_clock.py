@@ -107,8 +107,9 @@ class LongClock:
         there = stamps[~np.isnat(stamps)]
         before, self._before = self._before, np.append(self._before, there[-FEW:])[-FEW:]
         seen = np.append(before[-1:], there)
-        steps = np.abs(np.diff(seen).astype(np.int64)) / 1e6
-        if np.any((steps > 0.5 * HOUR_S) & (steps < 2.0 * HOUR_S)):
+        steps = np.diff(seen).astype(np.int64)
+        leap = max(int(steps.max()), -int(steps.min())) / 1e6 if steps.size else 0.0
+        if leap > 0.5 * HOUR_S:
             straight = straightened(np.append(before, stamps), self._said)[len(before) :]
             shift = self._shift
             if there.size:

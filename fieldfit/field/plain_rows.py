@@ -77,9 +77,12 @@ def plain_rows(block: LineBlock, form: Form, clock: int | None, gaps: bool) -> P
 
 def _sound(columns: list[NDArray[np.float64]], rows: int, counted: bool) -> bool:
     """Return whether the columns have a value or a gap in each row, and no row is blank."""
-    if any(len(column) != rows or np.isinf(column).any() for column in columns):
+    if any(len(column) != rows for column in columns):
         return False
-    return not (counted and np.any(np.all(np.isnan(columns), axis=0)))
+    finite = [bool(np.isfinite(column).all()) for column in columns]
+    if any(np.isinf(column).any() for column, sound in zip(columns, finite, strict=True) if not sound):
+        return False
+    return not (counted and not any(finite) and np.any(np.all(np.isnan(columns), axis=0)))
 
 
 def _stamps(
