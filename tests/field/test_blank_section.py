@@ -46,7 +46,9 @@ def test_with_every_option_taken_it_can_be_read(tmp_path):
     text = fill_in(path.read_text(encoding="utf-8"))
     options = re.sub(r"(?m)^# (?=\[|\w+ = )", "", text)
     either = re.sub(
-        r'(?m)^((pipe|fluid|roughness|head_loss|time|length|signal|range|pulse) = |kind = "gate|flow = "2\.4).*\n', "", options
+        r'(?m)^((pipe|fluid|roughness|head_loss|time|length|signal|range|pulse) = |kind = "gate|flow = "2\.4).*\n',
+        "",
+        options,
     )
     path.write_text(either, encoding="utf-8")
     section = read_section(path)
