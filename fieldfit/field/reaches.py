@@ -131,7 +131,7 @@ def reach_heads(plateaus: Plateaus, section: Section, reach: int) -> ReachHeads:
     plateaus, velocity_m, dead = _of_reach(plateaus, section, reach)
     section = section_of_reach(section, reach)
     weight = section.liquid.density_kg_m3(plateaus.temperature_degc) * STANDARD_GRAVITY
-    random = np.maximum(plateaus.random_pa[reach] / weight, 1e-7)
+    random = np.maximum(plateaus.random_pa[reach] / weight, 1e-6)
     levelling = _levelling(plateaus, section, reach, weight, random)
     drop = _elevation_drop(upstream, downstream)
     unlevelled = _head_loss(plateaus, reach, weight, drop) + velocity_m

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
@@ -19,6 +20,8 @@ NORMAL_95 = 1.959963984540054
 ALL_SCATTER = 1e4
 """Factor on the noise under which the shared errors stay where their priors put them."""
 WIDENINGS = 30
+FURTHEST = 20.0
+"""Distance in ln f at which the search for an interval's end gives up [-]."""
 ENOUGH = 0.98
 """Reduced χ² at which widened noise is content."""
 
@@ -135,7 +138,7 @@ def _polished(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> t
     for _ in range(2):
         slopes = _jacobian(model, noise, ln_friction, u)
         misfit = (model.readings.head_loss_m - model.predict(ln_friction, u).head_m) / noise
-        step = np.linalg.solve(slopes @ slopes.T, -slopes @ np.concatenate([misfit, u]))
+        step = _least_step(slopes, np.concatenate([misfit, u]))
         ln_friction, u = _bounded(model, ln_friction + float(step[0])), u + step[1:]
     return ln_friction, u
 
@@ -162,6 +165,15 @@ def _jacobian(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> A
     slopes[1:, : len(noise)] = -prediction.by_error / noise
     slopes[1:, len(noise) :] = np.eye(free)
     return slopes
+
+
+def _least_step(slopes: Array, residual: Array) -> Array:
+    """Return the step that takes most off the residuals, to first order; slopes have parameters along the first axis.
+
+    By orthogonal decomposition, not by normal equations: next to readings of hardly any noise the priors' ones would
+    be lost in the squares.
+    """
+    return np.asarray(np.linalg.lstsq(slopes.T, -residual, rcond=None)[0])
 
 
 def _chi_square(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> float:
@@ -220,7 +232,8 @@ def covariance(fit: Fit, better: Array | None = None) -> Array:
     count = len(fit.random_m)
     factor = np.ones(len(fit.u) + 1) if better is None else better
     weight = np.concatenate([np.full(count, factor[-1]), factor[:-1]])
-    return np.asarray(np.linalg.inv((slopes * weight**2) @ slopes.T))
+    root = np.linalg.pinv((slopes * weight).T)
+    return np.asarray(root @ root.T)
 
 
 def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> tuple[Array, float]:
@@ -230,7 +243,7 @@ def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
     variance; the squares of its coefficients are the contributions and add up to the whole.
     """
     slopes = _jacobian(model, noise, ln_friction, u)
-    coefficient = np.linalg.solve(slopes @ slopes.T, slopes)[0]
+    coefficient = np.linalg.pinv(slopes.T)[0]
     squares = coefficient**2
     share = np.append(squares[len(noise) :], np.sum(squares[: len(noise)]))
     variance = float(np.sum(squares))
@@ -239,8 +252,6 @@ def _linearised(model: HeadModel, noise: Array, ln_friction: float, u: Array) ->
 
 def _profile(model: HeadModel, noise: Array, best: tuple[float, Array], standard: float) -> tuple[float, float]:
     """Find where χ², minimised over the shared errors, has risen by the 95 % point of one degree of freedom."""
-    from scipy.optimize import brentq
-
     ln_friction, u_best = best
     floor = _chi_square(model, noise, ln_friction, u_best)
     ends = []
@@ -250,11 +261,23 @@ def _profile(model: HeadModel, noise: Array, best: tuple[float, Array], standard
             at = ln_friction + sign * distance
             return _chi_square(model, noise, at, _best_errors(model, noise, at, u_best)) - floor - NORMAL_95**2
 
-        far = NORMAL_95 * standard
-        while rise(far) < 0.0 and far < 20.0:
-            far *= 1.5
-        ends.append(ln_friction + sign * (float(brentq(rise, 0.0, far, xtol=1e-10, rtol=1e-10)) if far < 20.0 else far))
+        ends.append(ln_friction + sign * _crossing(rise, NORMAL_95 * standard))
     return ends[0], ends[1]
+
+
+def _crossing(rise: Callable[[float], float], expected: float) -> float:
+    """Return where a rise from below crosses zero; what was expected where it never does, or starts above.
+
+    The latter are readings that contradict themselves so far that no best point holds; their state says so.
+    """
+    from scipy.optimize import brentq
+
+    far = expected
+    while rise(far) < 0.0 and far < FURTHEST:
+        far *= 1.5
+    if far >= FURTHEST or rise(0.0) >= 0.0:
+        return far
+    return float(brentq(rise, 0.0, far, xtol=1e-10, rtol=1e-10))
 
 
 def _best_errors(model: HeadModel, noise: Array, ln_friction: float, start: Array) -> Array:
@@ -264,7 +287,7 @@ def _best_errors(model: HeadModel, noise: Array, ln_friction: float, start: Arra
         prediction = model.predict(ln_friction, u)
         slopes = prediction.by_error / noise
         misfit = (model.readings.head_loss_m - prediction.head_m) / noise
-        step = np.linalg.solve(slopes @ slopes.T + np.eye(len(slopes)), slopes @ misfit - u)
+        step = _least_step(np.hstack([-slopes, np.eye(len(slopes))]), np.concatenate([misfit, u]))
         u = u + step
         if np.max(np.abs(step), initial=0.0) < 1e-9:
             break

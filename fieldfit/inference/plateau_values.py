@@ -15,6 +15,9 @@ from fieldfit.inference.wall import PlateauValues
 
 Array = NDArray[np.float64]
 
+NO_LOSS_M = 1e-12
+"""Head loss that stands for none where a relative uncertainty is asked for [m]."""
+
 
 class _Effects(NamedTuple):
     """What one standard deviation of each shared error does to the values by definition; (M, K) each."""
@@ -46,7 +49,7 @@ def plateau_values(model: HeadModel, fit: Fit | None = None) -> PlateauValues:
     friction_m, factor = friction_by_definition(readings)
     bore = readings.bore.value
     random = fit.random_m if fit else readings.random_m
-    random_relative = random / np.maximum(np.abs(friction_m), 1e-300)
+    random_relative = random / np.maximum(np.abs(friction_m), NO_LOSS_M)
     effects = _effects(model, friction_m)
     positive = np.where(factor > 0.0, factor, np.nan)
     fitted = fit.model.predict(fit.ln_friction, fit.u).head_m if fit else readings.head_loss_m
@@ -85,7 +88,7 @@ def _effects(model: HeadModel, friction_m: Array) -> _Effects:
     ln_flow = errors.flow_m3_s / readings.flow_m3_s
     ln_bore, ln_length = errors.ln_bore[:, None], errors.ln_length[:, None]
     own = errors.head_m - errors.fitting_k[:, None] * velocity_head
-    ln_loss = (own - fittings_m * (2.0 * ln_flow - 4.0 * ln_bore)) / np.maximum(np.abs(friction_m), 1e-300)
+    ln_loss = (own - fittings_m * (2.0 * ln_flow - 4.0 * ln_bore)) / np.maximum(np.abs(friction_m), NO_LOSS_M)
     return _Effects(
         friction_m=own,
         ln_friction_factor=ln_loss - 2.0 * ln_flow + 5.0 * ln_bore - ln_length,
