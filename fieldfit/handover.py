@@ -6,6 +6,7 @@ from pathlib import Path
 
 from fieldfit.assessment import assess
 from fieldfit.decisions.acceptance import judge_contract
+from fieldfit.decisions.acceptance_stress import stress_contract
 from fieldfit.errors import InputError
 from fieldfit.field.section import Section
 from fieldfit.inference.fit import fit_reach
@@ -52,4 +53,5 @@ def _verdict(section: Section, reach: ReachFinding) -> ReachVerdict:
     if contract is None or reach.wall.friction_factor.best is None:
         return ReachVerdict(reach=reach, acceptance=None)
     fit = fit_reach(head_model(reach.readings, section.correlation))
-    return ReachVerdict(reach=reach, acceptance=judge_contract(fit, contract, section))
+    verdict = judge_contract(fit, contract, section)
+    return ReachVerdict(reach=reach, acceptance=verdict, stress=stress_contract(reach.readings, verdict, section))

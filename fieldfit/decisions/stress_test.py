@@ -256,6 +256,22 @@ def _inputs(readings: ReachReadings) -> list[_Input]:
     return [*found, _Input("gauges", "m", _gauge_limit(readings), head, _less_head)]
 
 
+def stated_limits(readings: ReachReadings) -> dict[str, float]:
+    """Return the limit stated for each input by its name, in the unit its error is told in.
+
+    Parameters
+    ----------
+    readings : ReachReadings
+        What the fit used.
+
+    Returns
+    -------
+    dict
+        Relative for meter, bore and length; metres of head for elevations and gauges.
+    """
+    return {one.name: one.limit for one in _inputs(readings)}
+
+
 def _less_head(values: dict[str, Array], error: Array) -> dict[str, Array]:
     """Take an error off the head loss."""
     return {"head_loss_m": values["head_loss_m"] - error}

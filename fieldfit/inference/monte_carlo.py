@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.uncertain import Shape
 from fieldfit.inference.batch import Batch, solve_batch
 from fieldfit.inference.fit import Fit
 from fieldfit.inference.wall import MonteCarlo
@@ -39,14 +40,7 @@ def monte_carlo(fit: Fit, correlation_standard: float, draws: int = DRAWS, seed:
         Intervals of f itself, not of its logarithm.
     """
     rng = np.random.default_rng(seed)
-    shapes = fit.model.errors.shapes
-    limit = np.sqrt(3.0)
-    u = np.array(
-        [
-            rng.uniform(-limit, limit, draws) if shape == "rectangular" else rng.standard_normal(draws)
-            for shape in shapes
-        ]
-    ).reshape(len(shapes), draws)
+    u = draw_errors(fit.model.errors.shapes, draws, rng)
     noise = fit.random_m[:, None] * rng.standard_normal((len(fit.random_m), draws))
     found, converged = solve_batch(_batch(fit, u, noise), _weight(fit), np.full(draws, fit.ln_friction))
     level = correlation_standard * rng.standard_normal(draws)
@@ -59,12 +53,39 @@ def monte_carlo(fit: Fit, correlation_standard: float, draws: int = DRAWS, seed:
     )
 
 
+def draw_errors(shapes: tuple[Shape, ...], draws: int, rng: np.random.Generator) -> Array:
+    """Return draws of errors of zero mean and unit standard deviation, each of its own distribution.
+
+    Parameters
+    ----------
+    shapes : tuple of str
+        Distribution of each of M errors.
+    draws : int
+        Number of draws.
+    rng : numpy.random.Generator
+        Where they come from.
+
+    Returns
+    -------
+    (M, draws) array
+    """
+    limit = np.sqrt(3.0)
+    rows = [rng.uniform(-limit, limit, draws) if one == "rectangular" else rng.standard_normal(draws) for one in shapes]
+    return np.array(rows).reshape(len(shapes), draws)
+
+
+def coverage_interval(values: Array) -> tuple[float, float]:
+    """Return the probabilistically symmetric 95 % interval of draws (JCGM 101, 7.7); NaN of none."""
+    if values.size == 0:
+        return float("nan"), float("nan")
+    low, high = np.quantile(values, ENDS)
+    return float(low), float(high)
+
+
 def _span(ln_friction: Array) -> tuple[float, float]:
     """Return the 95 % interval of f from draws of its logarithm [-]."""
-    if ln_friction.size == 0:
-        return float("nan"), float("nan")
-    low, high = np.exp(np.quantile(ln_friction, ENDS))
-    return float(low), float(high)
+    low, high = coverage_interval(ln_friction)
+    return float(np.exp(low)), float(np.exp(high))
 
 
 def _batch(fit: Fit, u: Array, noise: Array) -> Batch:

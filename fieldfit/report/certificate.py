@@ -9,9 +9,10 @@ from fieldfit.decisions.acceptance import Acceptance
 from fieldfit.field.section import Section
 from fieldfit.report import words
 from fieldfit.report.digits import decimals, fixed, known, litres, percent, plus_minus, significant
+from fieldfit.report.explanation_tables import stress_lines
 from fieldfit.report.finding import ReachFinding
 from fieldfit.report.handover import Handover, ReachVerdict
-from fieldfit.report.sheet import Block, Heading, Paragraph, Places, Sheet, Table
+from fieldfit.report.sheet import Block, Bullets, Heading, Paragraph, Places, Sheet, Table
 
 NAMES = {"c": "Hazen–Williams C", "roughness": "Roughness", "head_loss": "Head loss"}
 UNITS = {"c": ("", 1.0), "roughness": ("mm", 1e3), "head_loss": ("m", 1.0)}
@@ -150,6 +151,11 @@ def _reach(section: Section, verdict: ReachVerdict, several: bool) -> list[Block
         rows = tuple((one.what, percent(one.chance)) for one in found.extra[:3])
         blocks += [
             Table(head=("What would help to decide", "chance that it decides"), rows=rows, widths=(0.78, 0.22)),
+        ]
+    if verdict.stress:
+        blocks += [
+            Heading(text="How wrong an input would have to be to change the verdict"),
+            Bullets(items=stress_lines(verdict.stress)),
         ]
     return [*blocks, Heading(text="Readings"), _readings(reach)]
 

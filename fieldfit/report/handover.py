@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from fieldfit.decisions.acceptance import Acceptance
 from fieldfit.decisions.conformity import Outcome
+from fieldfit.decisions.stress_test import Stress
 from fieldfit.report.finding import Finding, ReachFinding
 
 
@@ -17,6 +18,8 @@ class ReachVerdict:
     """What was found of it."""
     acceptance: Acceptance | None
     """The verdict; None where the readings allow no friction factor."""
+    stress: tuple[Stress, ...] = ()
+    """How far off an input would have to be to change it."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -7,6 +7,7 @@ import pytest
 from handovers import build, contract_of, read, section_of
 
 from fieldfit.decisions.acceptance import judge_contract
+from fieldfit.decisions.acceptance_stress import stress_contract
 from fieldfit.field.section import Correlation
 from fieldfit.field.uncertain import Uncertain
 from fieldfit.inference.fit import fit_reach
@@ -134,3 +135,21 @@ def test_a_narrower_correlation_narrows_a_limit_on_roughness():
         for one in (wide, narrow)
     ]
     assert spans[1] < 0.5 * spans[0]
+
+
+def test_the_error_that_changes_the_verdict_does_and_a_smaller_one_does_not():
+    rng = np.random.default_rng(11)
+    contract = contract_of(limit=130.0)
+    section, readings = section_of(contract), read(rng, build(rng))
+    verdict = judge_contract(fit_reach(head_model(readings, section.correlation)), contract, section)
+    assert verdict.outcome == "pass"
+    found = {one.input: one for one in stress_contract(readings, verdict, section)}
+    assert set(found) == {"meter", "bore", "length", "gauges"}
+    # A meter that reads too high made C look too high, one for one; C is 130 with its guard at the edge.
+    meter = found["meter"]
+    expected = verdict.value / verdict.acceptance_limit - 1.0
+    assert meter.error == pytest.approx(expected, rel=0.15)
+    for share, outcome in ((0.95, "pass"), (1.02, meter.becomes)):
+        off = replace(readings, flow_m3_s=readings.flow_m3_s / (1.0 + share * meter.error))
+        judged_again = judge_contract(fit_reach(head_model(off, section.correlation)), contract, section)
+        assert judged_again.outcome == outcome
