@@ -22,10 +22,9 @@ from fieldfit.decisions.conformity import (
 from fieldfit.decisions.contract_scale import Scale, built_on, counted, scale_of
 from fieldfit.field.contract import Contract
 from fieldfit.field.section import Section
-from fieldfit.inference.fit import Fit
+from fieldfit.inference.fit import NORMAL_95, Fit
 from fieldfit.inference.prediction import OperatingPoint, predict
 
-NORMAL_95 = 1.959963984540054
 DEFAULT_RISK = 0.05
 """Risk the guard bands are shown with under simple acceptance, which needs none to decide [-]."""
 

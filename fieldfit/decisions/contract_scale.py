@@ -16,10 +16,9 @@ from fieldfit.field.uncertain import Uncertain
 from fieldfit.hydraulics.friction import colebrook_white, relative_roughness
 from fieldfit.hydraulics.hazen_williams import c_from_head_loss, c_of_roughness
 from fieldfit.hydraulics.materials import material
-from fieldfit.inference.fit import Fit, covariance
+from fieldfit.inference.fit import NORMAL_95, Fit, covariance
 from fieldfit.inference.prediction import C_BY_BORE, C_BY_LOSS, Loss, OperatingPoint, Predicted, Prediction, predict
 
-NORMAL_95 = 1.959963984540054
 SHARPER = 3.0
 """How much better an error is made in the search for what would decide."""
 SHARPEST = 1e-9

@@ -7,9 +7,10 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
+from fieldfit.field.reaches import elevation_drop, sum_of_k, tap_distance
 from fieldfit.field.readings import Levelling, ReachReadings
-from fieldfit.field.section import Section, Tap
-from fieldfit.field.uncertain import Accuracy, Uncertain
+from fieldfit.field.section import Section
+from fieldfit.field.uncertain import Accuracy
 from fieldfit.field.wishes import Wishes
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY, colebrook_white, relative_roughness
 from fieldfit.inference.fit import Fit, fit_known
@@ -139,12 +140,12 @@ def planned_readings(section: Section, wishes: Wishes, layout: Layout, roughness
     density, viscosity = section.liquid.density_kg_m3(temperature), section.liquid.viscosity_m2_s(temperature)
     bore = section.bore.value
     velocity_head = (flow / (np.pi * bore**2 / 4.0)) ** 2 / (2.0 * STANDARD_GRAVITY)
-    fitting_k = _fittings(section)
+    fitting_k = sum_of_k(section.fittings)
     factor = colebrook_white(4.0 * flow / (np.pi * bore * viscosity), roughness_m / bore)
     head = (factor * layout.length_m / bore + fitting_k.value) * velocity_head
     weight = density * STANDARD_GRAVITY
     upper = wishes.static_pa - wishes.supply_loss_pa * (flow / wishes.flow_m3_s) ** 2
-    fall = _fall(section)
+    fall = elevation_drop(section.taps[0], section.taps[-1])
     lower = upper - weight * (head - (fall.value if fall else 0.0))
     noise = scatter_pa(wishes, layout) / np.sqrt(max(layout.hold_s / MEMORY_S, 1.0)) / weight
     first, last = section.taps[0], section.taps[-1]
@@ -153,7 +154,7 @@ def planned_readings(section: Section, wishes: Wishes, layout: Layout, roughness
         upstream=replace(first, accuracy=layout.gauge),
         downstream=replace(last, accuracy=layout.gauge),
         meter=replace(section.meter, accuracy=layout.meter),
-        length=replace(_length(first, last), value=layout.length_m),
+        length=replace(tap_distance(first, last), value=layout.length_m),
         bore=section.bore,
         fitting_k=fitting_k,
         elevation_drop=fall,
@@ -194,30 +195,6 @@ def _levelling(noise_m: float, static_pa: tuple[float, float]) -> Levelling:
 def _temperature(section: Section) -> float:
     """Return the temperature to plan for [°C]."""
     return section.temperature.value if section.temperature else USUAL_TEMPERATURE_DEGC
-
-
-def _length(first: Tap, last: Tap) -> Uncertain:
-    """Return the distance between two taps with its uncertainty [m]."""
-    return Uncertain(
-        value=last.station.value - first.station.value,
-        standard=float(np.hypot(first.station.standard, last.station.standard)),
-    )
-
-
-def _fall(section: Section) -> Uncertain | None:
-    """Return the first gauge's elevation less the last one's [m]; None when not surveyed."""
-    first, last = section.taps[0].elevation, section.taps[-1].elevation
-    if first is None or last is None:
-        return None
-    return Uncertain(value=first.value - last.value, standard=float(np.hypot(first.standard, last.standard)))
-
-
-def _fittings(section: Section) -> Uncertain:
-    """Return the sum of all loss coefficients [-]."""
-    return Uncertain(
-        value=float(sum(fitting.count * fitting.k.value for fitting in section.fittings)),
-        standard=float(np.sqrt(sum((fitting.count * fitting.k.standard) ** 2 for fitting in section.fittings))),
-    )
 
 
 def _roughness_by_friction(factor: float, reynolds: float) -> float:

@@ -10,9 +10,8 @@ from fieldfit.field.section import Correlation
 from fieldfit.hydraulics.friction import colebrook_white
 from fieldfit.hydraulics.hazen_williams import c_from_friction_factor
 from fieldfit.hydraulics.materials import material
+from fieldfit.inference.fit import NORMAL_95
 from fieldfit.inference.wall import Wall
-
-NORMAL_95 = 1.959963984540054
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

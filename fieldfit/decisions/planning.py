@@ -16,10 +16,9 @@ from fieldfit.field.uncertain import Accuracy
 from fieldfit.field.wishes import Wishes
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY
 from fieldfit.hydraulics.materials import material
-from fieldfit.inference.fit import covariance
+from fieldfit.inference.fit import NORMAL_95, covariance
 from fieldfit.inference.prediction import C_BY_LOSS
 
-NORMAL_95 = 1.959963984540054
 WANTED_C = 0.05
 """Half-width of C that is wanted where the file says nothing [-]."""
 POWER = 1.645 + 0.842

@@ -15,7 +15,7 @@ from fieldfit.field.readings import ReachReadings
 from fieldfit.field.section import Correlation
 from fieldfit.field.uncertain import Accuracy
 from fieldfit.hydraulics.friction import STANDARD_GRAVITY, colebrook_white, relative_roughness, smooth
-from fieldfit.inference.batch import Batch, solve_batch
+from fieldfit.inference.batch import Batch, readings_weight, solve_batch
 from fieldfit.inference.head_model import HeadModel, head_model
 from fieldfit.inference.verdict import ROUGHEST_WALL, SMOOTHEST_SHARE
 from fieldfit.inference.wall import Wall
@@ -222,9 +222,8 @@ def _weight(model: HeadModel, wall: Wall) -> Array:
     """Return the weights of the readings in the fit, (K, 1)."""
     best = float(np.log(wall.friction_factor.best or 1.0))
     prediction = model.predict(best, np.zeros(len(model.errors.names)))
-    noise = model.readings.random_m**2 * max(wall.reduced_chi_square or 1.0, 1.0)
-    weight = np.linalg.solve(np.diag(noise) + prediction.by_error.T @ prediction.by_error, prediction.by_wall)
-    return np.asarray(weight[:, None] / np.sum(np.abs(weight)))
+    noise = model.readings.random_m * np.sqrt(max(wall.reduced_chi_square or 1.0, 1.0))
+    return readings_weight(prediction.by_wall, prediction.by_error, noise)
 
 
 def _inputs(readings: ReachReadings) -> list[_Input]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from typing import NamedTuple
 
@@ -64,7 +65,7 @@ def reach_readings(plateaus: Plateaus, section: Section, reach: int, *, every_tu
         upstream=upstream,
         downstream=downstream,
         meter=section.meter,
-        length=_length(upstream, downstream),
+        length=tap_distance(upstream, downstream),
         bore=section.bore,
         fitting_k=_fitting_k(section, reach),
         elevation_drop=heads.elevation_drop,
@@ -133,10 +134,10 @@ def reach_heads(plateaus: Plateaus, section: Section, reach: int) -> ReachHeads:
     weight = section.liquid.density_kg_m3(plateaus.temperature_degc) * STANDARD_GRAVITY
     random = np.maximum(plateaus.random_pa[reach] / weight, 1e-6)
     levelling = _levelling(plateaus, section, reach, weight, random)
-    drop = _elevation_drop(upstream, downstream)
+    drop = elevation_drop(upstream, downstream)
     unlevelled = _head_loss(plateaus, reach, weight, drop) + velocity_m
     head = unlevelled - _offsets(plateaus, unlevelled) if levelling else unlevelled
-    inertia = _length(upstream, downstream).value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
+    inertia = tap_distance(upstream, downstream).value / (STANDARD_GRAVITY * np.pi * section.bore.value**2 / 4.0)
     head = head - inertia * plateaus.flow_slope_m3_s2
     doubt = inertia * _slope_standard(plateaus)
     random = np.hypot(random, doubt)
@@ -163,7 +164,7 @@ def _of_reach(plateaus: Plateaus, section: Section, reach: int) -> tuple[Plateau
     return replace(kept, flow_m3_s=reach_flow(kept.flow_m3_s, section, reach)), velocity_m, dead
 
 
-def _length(upstream: Tap, downstream: Tap) -> Uncertain:
+def tap_distance(upstream: Tap, downstream: Tap) -> Uncertain:
     """Return the distance between two taps [m]."""
     return Uncertain(
         value=downstream.station.value - upstream.station.value,
@@ -173,7 +174,7 @@ def _length(upstream: Tap, downstream: Tap) -> Uncertain:
     )
 
 
-def _elevation_drop(upstream: Tap, downstream: Tap) -> Uncertain | None:
+def elevation_drop(upstream: Tap, downstream: Tap) -> Uncertain | None:
     """Return the upper gauge's elevation less the lower one's [m]."""
     if upstream.elevation is None or downstream.elevation is None:
         return None
@@ -208,7 +209,7 @@ def _levelling(plateaus: Plateaus, section: Section, reach: int, weight: Array, 
     static = plateaus.static
     if not np.any(static):
         return None
-    drop = _elevation_drop(section.taps[reach], section.taps[reach + 1])
+    drop = elevation_drop(section.taps[reach], section.taps[reach + 1])
     at_rest = _head_loss(plateaus, reach, weight, drop)[static]
     drift = float(at_rest[-1] - at_rest[0]) if len(at_rest) > 1 else None
     pressure = np.mean(plateaus.pressure_pa[reach : reach + 2, static], axis=1)
@@ -237,7 +238,7 @@ def _level_standard(
     """Return how well the zero of the head loss is known at each plateau [m]."""
     if levelling:
         return np.full(len(weight), levelling.standard_m)
-    drop = _elevation_drop(section.taps[reach], section.taps[reach + 1])
+    drop = elevation_drop(section.taps[reach], section.taps[reach + 1])
     gauges = _gauge_standard(section, reach, plateaus.pressure_pa[reach : reach + 2]) / weight
     return np.asarray(np.hypot(gauges, drop.standard if drop else np.inf))
 
@@ -267,11 +268,16 @@ def _reasons(plateaus: Plateaus, section: Section, head: Array, doubts: tuple[Ar
 def _fitting_k(section: Section, reach: int) -> Uncertain:
     """Return the sum of loss coefficients between two taps; like fittings share their error."""
     within = [fitting for fitting in section.fittings if _between(fitting, section, reach)]
-    standards = [fitting.count * fitting.k.standard for fitting in within]
+    return sum_of_k(within)
+
+
+def sum_of_k(fittings: Sequence[Fitting]) -> Uncertain:
+    """Return the sum of loss coefficients of some fittings [-]; like fittings share their error."""
+    standards = [fitting.count * fitting.k.standard for fitting in fittings]
     return Uncertain(
-        value=float(sum(fitting.count * fitting.k.value for fitting in within)),
+        value=float(sum(fitting.count * fitting.k.value for fitting in fittings)),
         standard=float(np.sqrt(np.sum(np.square(standards)))),
-        assumed=any(fitting.k.assumed for fitting in within),
+        assumed=any(fitting.k.assumed for fitting in fittings),
     )
 
 

@@ -87,6 +87,27 @@ def solve_batch(batch: Batch, weight: Array, start: Array) -> tuple[Array, NDArr
     return ln_friction, converged
 
 
+def readings_weight(by_wall: Array, by_error: Array, noise_m: Array) -> Array:
+    """Return generalised least-squares weights of readings, with shared errors made linear, (K, 1) [-].
+
+    Parameters
+    ----------
+    by_wall : (K,) array
+        d head / d ln f at the reference [m].
+    by_error : (M, K) array
+        d head / d u of each shared error [m].
+    noise_m : (K,) array
+        Random standard errors [m].
+
+    Returns
+    -------
+    (K, 1) array
+        Of unit absolute sum.
+    """
+    weight = np.linalg.solve(np.diag(noise_m**2) + by_error.T @ by_error, by_wall)
+    return np.asarray(weight[:, None] / np.sum(np.abs(weight)))
+
+
 def _newton_step(batch: Batch, weight: Array, ln_friction: Array) -> Array:
     """Return the Newton step of each section."""
     loss_per_k = 8.0 * batch.flow_m3_s * np.abs(batch.flow_m3_s) / (np.pi**2 * STANDARD_GRAVITY * batch.bore_m**4)

@@ -27,9 +27,9 @@ from fieldfit.inference.fault_model import (
     ZERO,
     Trials,
 )
+from fieldfit.inference.fit import NORMAL_95
 
 Array = NDArray[np.float64]
-NORMAL_95 = 1.959963984540054
 GENERIC_NEW_M = (1.5e-6, 5e-4)
 """Roughness of new pipe of whatever material: drawn plastic to sound cast iron and concrete [m]."""
 MODEST_AGE = 2.0

@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.field.uncertain import Shape
-from fieldfit.inference.batch import Batch, solve_batch
+from fieldfit.inference.batch import Batch, readings_weight, solve_batch
 from fieldfit.inference.fit import Fit
 from fieldfit.inference.wall import MonteCarlo
 
@@ -107,6 +107,4 @@ def _batch(fit: Fit, u: Array, noise: Array) -> Batch:
 def _weight(fit: Fit) -> Array:
     """Return the generalised least-squares weights of the readings at the best point, (K, 1)."""
     prediction = fit.model.predict(fit.ln_friction, np.zeros(len(fit.u)))
-    covariance = np.diag(fit.random_m**2) + prediction.by_error.T @ prediction.by_error
-    weight = np.linalg.solve(covariance, prediction.by_wall)
-    return np.asarray(weight[:, None] / np.sum(np.abs(weight)))
+    return readings_weight(prediction.by_wall, prediction.by_error, fit.random_m)

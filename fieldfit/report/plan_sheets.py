@@ -9,7 +9,8 @@ from typing import Any
 from fieldfit import __version__
 from fieldfit.decisions.expected import Expected
 from fieldfit.decisions.plan import Option, Plan
-from fieldfit.decisions.planning import NORMAL_95, SETTLE_S, STATIC_S, WANTED_C
+from fieldfit.decisions.planning import SETTLE_S, STATIC_S, WANTED_C
+from fieldfit.inference.fit import NORMAL_95
 from fieldfit.report.digits import fixed, litres, percent, significant
 from fieldfit.report.sheet import Block, Bullets, Heading, Paragraph, Places, Sheet, Table
 
