@@ -20,6 +20,8 @@ NORMAL_95 = 1.959963984540054
 ALL_SCATTER = 1e4
 """Factor on the noise under which the shared errors stay where their priors put them."""
 WIDENINGS = 30
+FAR_BELOW_SMOOTH = 5.0
+"""Distance under a smooth pipe's ln f that is followed: 1/150 of its f, a fault in the data long before [-]."""
 FURTHEST = 20.0
 """Distance in ln f at which the search for an interval's end gives up [-]."""
 ENOUGH = 0.98
@@ -144,8 +146,10 @@ def _polished(model: HeadModel, noise: Array, ln_friction: float, u: Array) -> t
 
 
 def _bounded(model: HeadModel, ln_friction: float) -> float:
-    """Keep ln f where the curve is followed; a best value at the end is told apart by its roughness later."""
-    return min(ln_friction, float(highest_ln_friction(np.array(model.reference.reynolds))))
+    """Keep ln f where the curve is followed and still felt; a best value at either end is told apart by its state."""
+    reynolds = np.array(model.reference.reynolds)
+    lowest = float(np.log(smooth(reynolds))) - FAR_BELOW_SMOOTH
+    return min(max(ln_friction, lowest), float(highest_ln_friction(reynolds)))
 
 
 def _first_guess(model: HeadModel) -> float:
@@ -258,7 +262,7 @@ def _profile(model: HeadModel, noise: Array, best: tuple[float, Array], standard
     for sign in (-1.0, 1.0):
 
         def rise(distance: float, sign: float = sign) -> float:
-            at = ln_friction + sign * distance
+            at = _bounded(model, ln_friction + sign * distance)
             return _chi_square(model, noise, at, _best_errors(model, noise, at, u_best)) - floor - NORMAL_95**2
 
         ends.append(ln_friction + sign * _crossing(rise, NORMAL_95 * standard))
@@ -272,7 +276,7 @@ def _crossing(rise: Callable[[float], float], expected: float) -> float:
     """
     from scipy.optimize import brentq
 
-    far = expected
+    far = min(expected, FURTHEST)
     while rise(far) < 0.0 and far < FURTHEST:
         far *= 1.5
     if far >= FURTHEST or rise(0.0) >= 0.0:

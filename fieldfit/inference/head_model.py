@@ -16,6 +16,9 @@ from fieldfit.inference.shared_errors import SharedErrors, shared_errors
 
 Array = NDArray[np.float64]
 
+FURTHEST_ERROR = 100.0
+"""Standard deviations to which a shared error is followed: only a wild trial step goes beyond."""
+
 
 class Reference(NamedTuple):
     """The point the pooled results are for: where the readings know most of the wall."""
@@ -72,6 +75,7 @@ class HeadModel:
         Prediction
         """
         readings, errors = self.readings, self.errors
+        u = np.clip(u, -FURTHEST_ERROR, FURTHEST_ERROR)
         flow = readings.flow_m3_s + u @ errors.flow_m3_s
         bore = readings.bore.value * np.exp(u @ errors.ln_bore)
         length = readings.length.value * np.exp(u @ errors.ln_length)

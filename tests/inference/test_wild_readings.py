@@ -1,7 +1,7 @@
 """Whatever the readings, the estimate ends in one of three states and never in an error or a NaN where a number is due."""
 
 import numpy as np
-from hypothesis import HealthCheck, given, settings
+from hypothesis import HealthCheck, example, given, settings
 from hypothesis import strategies as st
 from readings_maker import make_readings
 
@@ -11,6 +11,8 @@ from fieldfit.inference.estimate import estimate
 HEADS = st.lists(st.floats(-5.0, 60.0), min_size=1, max_size=6)
 
 
+@example(head=[1.0, -1.0], top=1.0, noise=1e-6, bore_relative=0.0, others=(False, 0.0))
+@example(head=[34.0], top=0.25, noise=1e-6, bore_relative=0.1, others=(False, 0.0))
 @settings(deadline=None, max_examples=25, suppress_health_check=[HealthCheck.too_slow])
 @given(
     head=HEADS,
